@@ -1,0 +1,16 @@
+"""Errors of the workbook tools; the root is `epochconv.errors.EpochconvError`."""
+
+from __future__ import annotations
+
+from epochconv.errors import EpochconvError
+
+
+class Refusal(EpochconvError):
+    """The workbook is refused and the file untouched (exit code 1).
+
+    The text is one sentence that says what was wrong, where, and what to do.
+    """
+
+
+class UsageError(EpochconvError):
+    """The call is wrong or ambiguous: an unknown heading, two candidates, a missing choice (exit code 2)."""
