@@ -1,0 +1,62 @@
+"""Content types: which line counts for a part, and how one is added."""
+
+from __future__ import annotations
+
+import pytest
+
+from tests.workbook_tools.loose_parts import PACKAGE, LooseParts, applied
+from workbook_tools.content_types import append_override, read_content_types
+from workbook_tools.errors import Refusal
+from workbook_tools.splice import EditKind
+
+LIST = (
+    f'<Types xmlns="{PACKAGE}/content-types">'
+    '<Default Extension="XML" ContentType="text/Plain"/><Default Extension="vml" ContentType="v"/>'
+    '<Override PartName="/xl/WorkBook.xml" ContentType="Main"/></Types>'
+)
+
+
+@pytest.mark.parametrize(
+    ("part", "content_type"),
+    [
+        ("xl/workbook.xml", "main"),
+        ("/XL/workbook.XML", "main"),
+        ("xl/other.xml", "text/plain"),
+        ("xl/drawing.VML", "v"),
+        ("xl/drawing.bin", None),
+        ("xl.xml/drawing", None),
+    ],
+)
+def test_the_line_of_the_part_comes_before_that_of_its_extension(
+    part: str, content_type: str | None
+) -> None:
+    assert read_content_types(LooseParts({"[Content_Types].xml": LIST})).of(part) == content_type
+
+
+def test_a_package_without_the_list_is_no_workbook() -> None:
+    with pytest.raises(Refusal, match=r"^notes\.xlsx holds no \[Content_Types\]\.xml"):
+        read_content_types(LooseParts({"word.xml": ""}, "notes.xlsx"))
+
+
+def test_the_list_is_found_in_any_case() -> None:
+    assert read_content_types(LooseParts({"[content_types].XML": LIST})).part == (
+        "[content_types].XML"
+    )
+
+
+@pytest.mark.parametrize(
+    "xml",
+    [
+        LIST,
+        f'<Types xmlns="{PACKAGE}/content-types"/>',
+        f'<t:Types xmlns:t="{PACKAGE}/content-types"></t:Types>',
+    ],
+)
+def test_a_line_is_added_last(xml: str) -> None:
+    edit = append_override(xml.encode(), "xl/a&b.xml", "styles+xml")
+    assert edit.kind is EditKind.STYLE_APPENDED
+    after = applied(xml.encode(), [edit])
+    types = read_content_types(LooseParts({"[Content_Types].xml": after}))
+    before = read_content_types(LooseParts({"[Content_Types].xml": xml}))
+    assert types.overrides == before.overrides | {"xl/a&b.xml": "styles+xml"}
+    assert types.defaults == before.defaults
