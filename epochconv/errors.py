@@ -4,11 +4,11 @@ from __future__ import annotations
 
 
 class EpochconvError(Exception):
-    """Root of all errors raised on purpose; its text is one sentence for the person at the keyboard."""
+    """Root of all errors raised on purpose; each text speaks to the person at the keyboard."""
 
 
 class ArgumentError(EpochconvError, ValueError):
-    """An argument is wrong: a bad parameter, an unknown name, a wrong dimension or an unreadable text."""
+    """A bad parameter, an unknown name, a wrong dimension or an unreadable text."""
 
 
 class OutOfRangeError(ArgumentError):

@@ -1,0 +1,134 @@
+"""From values of a measure back to moments, also where the map turns over.
+
+A measure without an inverse of its own is cut at its turning points into branches on which it is
+monotone. On a branch each value is bracketed by two knots of the history's grid and found by
+Newton's method with the exact derivative, kept inside the bracket.
+"""
+
+from __future__ import annotations
+
+import functools
+import itertools
+from dataclasses import dataclass
+
+import numpy as np
+
+from epochconv.hermite import BLOCK, FloatArray
+from epochconv.history import ExpansionHistory
+from epochconv.measure import Measure
+from epochconv.moment import Moment
+
+_MOST_STEPS = 80
+_EPSILON = float(np.finfo(np.float64).eps)
+
+
+def roots(measure: Measure, values: FloatArray, history: ExpansionHistory) -> list[Moment]:
+    """Return the moments at `values`, one entry per branch, the nearer branch first.
+
+    Where a branch does not reach a value its entry is NaN; values are of shape (n,).
+    """
+    if measure.moment_of is not None:
+        return [measure.moment_of(values, history)]
+    if measure.rescaled_from is not None:
+        base, _, back = measure.rescaled_from
+        return roots(base, back(values), history)
+    return [
+        Moment(x=_solve(branch, measure, values, history)) for branch in _branches(measure, history)
+    ]
+
+
+def range_of(measure: Measure, history: ExpansionHistory) -> tuple[float, float]:
+    """Return the lowest and the highest value of the measure under the history."""
+    if measure.range_of is not None:
+        return measure.range_of(history)
+    if measure.rescaled_from is not None:
+        base, forth, _ = measure.rescaled_from
+        with np.errstate(divide="ignore"):
+            low, high = forth(np.array(range_of(base, history)))
+        return float(low), float(high)
+    ends = [value for branch in _branches(measure, history) for value in branch.values]
+    return float(min(ends)), float(max(ends))
+
+
+@dataclass(frozen=True)
+class _Branch:
+    """A stretch of x on which a measure rises or falls throughout, on the grid's knots."""
+
+    knots: FloatArray
+    values: FloatArray
+
+    @property
+    def rises(self) -> bool:
+        return bool(self.values[-1] >= self.values[0])
+
+
+@functools.lru_cache(maxsize=256)
+def _branches(measure: Measure, history: ExpansionHistory) -> tuple[_Branch, ...]:
+    assert measure.slope_at is not None
+    knots = history.tables.knots
+    slopes = measure.slope_at(knots, history)
+    turns = np.flatnonzero(np.sign(slopes[:-1]) * np.sign(slopes[1:]) < 0)
+    cuts = [_turning_point(measure, history, knots[i], knots[i + 1]) for i in turns]
+    edges = [knots[0], *cuts, knots[-1]]
+    branches = []
+    for low, high in itertools.pairwise(edges):
+        inner = knots[(knots > low) & (knots < high)]
+        stretch = np.concatenate([[low], inner, [high]])
+        branches.append(_Branch(stretch, measure.value_at(Moment(x=stretch), history)))
+    return tuple(branches)
+
+
+def _turning_point(measure: Measure, history: ExpansionHistory, low: float, high: float) -> float:
+    """Return x between two knots at which the slope changes sign, by bisection."""
+    assert measure.slope_at is not None
+    sign = np.sign(measure.slope_at(np.array([low]), history)[0])
+    while True:
+        middle = 0.5 * (low + high)
+        if middle in (low, high):
+            return middle
+        if np.sign(measure.slope_at(np.array([middle]), history)[0]) == sign:
+            low = middle
+        else:
+            high = middle
+
+
+def _solve(
+    branch: _Branch, measure: Measure, values: FloatArray, history: ExpansionHistory
+) -> FloatArray:
+    result = np.empty_like(values)
+    for start in range(0, len(values), BLOCK):
+        block = slice(start, start + BLOCK)
+        result[block] = _solve_block(branch, measure, values[block], history)
+    return result
+
+
+def _solve_block(
+    branch: _Branch, measure: Measure, values: FloatArray, history: ExpansionHistory
+) -> FloatArray:
+    assert measure.slope_at is not None
+    sign = 1.0 if branch.rises else -1.0
+    climb, wanted = sign * branch.values, sign * values
+    outside = ~((wanted >= climb[0]) & (wanted <= climb[-1]))
+    wanted = np.where(outside, climb[0], wanted)
+    piece = np.clip(np.searchsorted(climb, wanted, side="right") - 1, 0, len(climb) - 2)
+    low, high = branch.knots[piece], branch.knots[piece + 1]
+    rise = climb[piece + 1] - climb[piece]
+    x = low + (high - low) * np.divide(
+        wanted - climb[piece], rise, out=np.zeros_like(rise), where=rise > 0.0
+    )
+    for _ in range(_MOST_STEPS):
+        gap = sign * measure.value_at(Moment(x=x), history) - wanted
+        low = np.where(gap < 0.0, x, low)
+        high = np.where(gap > 0.0, x, high)
+        slope = sign * measure.slope_at(x, history)
+        step = np.divide(gap, slope, out=np.zeros_like(gap), where=slope != 0.0)
+        trial = x - step
+        halved = ~((trial >= low) & (trial <= high)) | (slope <= 0.0)
+        trial = np.where(halved & (gap != 0.0), 0.5 * (low + high), trial)
+        moved = np.abs(trial - x)
+        x = trial
+        blur = np.divide(wanted, slope, out=np.zeros_like(gap), where=slope > 0.0)
+        if np.all(moved <= _EPSILON * (2.0 * x + 4.0 * np.abs(blur))):
+            break
+    x[outside] = np.nan
+    return x

@@ -1,0 +1,81 @@
+"""Pint quantities for results, in the registry and unit that the caller asks for."""
+
+from __future__ import annotations
+
+import weakref
+from typing import Any
+
+import pint
+
+from epochconv.errors import ArgumentError
+from epochconv.reading_quantities import (
+    BASE_NAMES,
+    is_quantity,
+    parsec_correction,
+    table_unit_of,
+)
+from epochconv.units import Unit, factor, find_unit
+
+# Quantity class of a registry -> {(unit wanted, our unit): (the registry's unit, factor)}.
+_targets: weakref.WeakKeyDictionary[type, dict[tuple[Any, Unit], tuple[Any, float]]] = (
+    weakref.WeakKeyDictionary()
+)
+
+
+def quantity_of(magnitude: Any, unit: Unit, wanted: Any, asker: object) -> Any:
+    """Return `magnitude`, which is in `unit`, as a quantity.
+
+    Args:
+        magnitude: a float or an array, changed in place where it is an array.
+        unit: a unit of our table.
+        wanted: None (keep `unit`), the text of a unit (in the application registry), or a unit or
+            quantity of any registry, in which the result then lives.
+        asker: the value that the caller gave; without `wanted`, a quantity's registry is kept.
+    Raises:
+        ArgumentError: `wanted` is unknown or of another dimension.
+    """
+    if wanted is None or isinstance(wanted, str):
+        key: Any = wanted
+        if wanted is None and is_quantity(asker):
+            make: Any = type(asker)
+        else:
+            make = pint.get_application_registry().Quantity  # type: ignore[no-untyped-call]
+    elif hasattr(wanted, "dimensionality"):
+        one = wanted if is_quantity(wanted) else 1.0 * wanted
+        make, key = type(one), tuple(one.unit_items())
+    else:
+        raise ArgumentError(f"unit={wanted!r} is neither a text nor a pint unit")
+    known = _targets.setdefault(make, {})
+    target = known.get((key, unit))
+    if target is None:
+        target = known[key, unit] = _target(make, wanted, unit)
+    units, scale = target
+    if scale != 1.0:
+        magnitude *= scale
+    return make(magnitude, units)
+
+
+def _target(make: Any, wanted: Any, unit: Unit) -> tuple[Any, float]:
+    """Return the registry's unit and the factor from ours to it."""
+    if wanted is None:
+        return make(1.0, unit.long_name).units, 1.0
+    if isinstance(wanted, str):
+        ours = find_unit(wanted)
+        try:
+            one = make(1.0, wanted if ours is None else ours.long_name)
+        except Exception:  # a registry's parser raises many kinds for what it cannot read
+            raise ArgumentError(f"unit={wanted!r} is not a unit that is known here") from None
+    else:
+        one = make(1.0, wanted.units if is_quantity(wanted) else wanted)
+        ours = table_unit_of(one)
+    if ours is not None and ours.dimension == unit.dimension:
+        return one.units, factor(unit, ours)
+    base = make(1.0, BASE_NAMES[unit.dimension])
+    if ours is not None or one.dimensionality != base.dimensionality:
+        raise ArgumentError(
+            f"unit={str(wanted)!r} does not fit: the result is a {unit.dimension}, "
+            f"in {unit.symbol or 'no unit'}"
+        )
+    if make(0.0, one.units).m_as(base.units) != 0.0:
+        raise ArgumentError(f"unit={str(wanted)!r} is a scale with its own zero; use K")
+    return one.units, unit.size / (float(one.m_as(base.units)) * parsec_correction(one))
