@@ -74,6 +74,15 @@ class Element:
         """Yield the children of that local name in this element's own namespace."""
         return (child for child in self.children if (child.local, child.uri) == (local, self.uri))
 
+    def descendants(self, local: str) -> Iterator[Element]:
+        """Yield what is of that local name in this element's own namespace, at any depth."""
+        waiting = self.children[::-1]
+        while waiting:
+            element = waiting.pop()
+            if (element.local, element.uri) == (local, self.uri):
+                yield element
+            waiting += element.children[::-1]
+
     def flag(self, name: str, default: bool = False) -> bool:
         """Return a yes-or-no attribute (ECMA-376 part 1, ST_OnOff and xsd:boolean)."""
         value = self.attributes.get(name)

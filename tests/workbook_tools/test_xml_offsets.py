@@ -103,6 +103,16 @@ def test_find_looks_only_at_children_in_the_own_namespace() -> None:
     assert root.find("c") is None
 
 
+def test_descendants_come_in_the_order_of_the_file_from_any_depth() -> None:
+    root = parse(
+        b'<a xmlns="u" xmlns:o="v"><b n="1"><b n="2"/></b>'
+        b'<o:b/><o:c><b n="3"/></o:c><b n="4"/></a>',
+        "p",
+    )
+    assert [b.attributes["n"] for b in root.descendants("b")] == ["1", "2", "3", "4"]
+    assert list(root.descendants("a")) == []
+
+
 @pytest.mark.parametrize(
     ("written", "meant"),
     [("1", True), ("true", True), ("on", True), (" 1 ", True), ("0", False), ("false", False)],
