@@ -15,6 +15,7 @@ import pytest
 from lxml import etree
 
 from tests.workbook_tools.rules.package import COMPATIBILITY, namespace_and_name
+from tests.workbook_tools.strict_names import to_transitional
 
 VARIABLE = "EPOCHBOOK_SCHEMAS"
 needs_schemas = pytest.mark.skipif(
@@ -27,18 +28,6 @@ _SCHEMA_OF = {
     f"{_TRANSITIONAL}drawingml/2006/chart": "dml-chart.xsd",
     f"{_TRANSITIONAL}drawingml/2006/spreadsheetDrawing": "dml-spreadsheetDrawing.xsd",
 }
-# Strict namespaces -> their transitional twins, so that one set of schemas serves both.
-_STRICT_TWINS = {
-    b"http://purl.oclc.org/ooxml/spreadsheetml/main": f"{_TRANSITIONAL}spreadsheetml/2006/main",
-    b"http://purl.oclc.org/ooxml/officeDocument/relationships": (
-        f"{_TRANSITIONAL}officeDocument/2006/relationships"
-    ),
-    b"http://purl.oclc.org/ooxml/drawingml/chart": f"{_TRANSITIONAL}drawingml/2006/chart",
-    b"http://purl.oclc.org/ooxml/drawingml/main": f"{_TRANSITIONAL}drawingml/2006/main",
-    b"http://purl.oclc.org/ooxml/drawingml/spreadsheetDrawing": (
-        f"{_TRANSITIONAL}drawingml/2006/spreadsheetDrawing"
-    ),
-}
 _XML_SPACE = "{http://www.w3.org/XML/1998/namespace}space"
 
 
@@ -48,9 +37,10 @@ def schema_problems(xml: bytes) -> list[str] | None:
     Raises:
         lxml.etree.XMLSyntaxError: the part is not well-formed.
     """
-    for strict, twin in _STRICT_TWINS.items():
-        xml = xml.replace(strict, twin.encode())
-    root = etree.fromstring(xml, etree.XMLParser(huge_tree=True, resolve_entities=False))
+    # One set of schemas serves both kinds of workbook.
+    root = etree.fromstring(
+        to_transitional(xml), etree.XMLParser(huge_tree=True, resolve_entities=False)
+    )
     name = _SCHEMA_OF.get(namespace_and_name(root.tag)[0])
     if name is None or root.tag.endswith("}MapInfo"):  # which holds a schema of its own
         return None
