@@ -5,11 +5,11 @@ from __future__ import annotations
 import re
 
 _ESCAPE = re.compile(r"_x([0-9A-Fa-f]{4})_")
+# what XML 1.0 forbids (clause 2.2), and a carriage return, which parsers turn into a line feed
+_FORBIDDEN = "\\x00-\\x08\\x0b-\\x1f\ud800-\udfff\ufffe\uffff"
 _TO_ESCAPE = re.compile(
-    # what XML 1.0 forbids (clause 2.2), and a carriage return, which parsers turn into a line feed
-    "[\\x00-\\x08\\x0b-\\x1f\ud800-\udfff\ufffe\uffff]"
-    # an underscore that would begin an escape although somebody typed it
-    "|_(?=x[0-9A-Fa-f]{4}_)"
+    # also an underscore that would begin an escape, be the closing one typed or ours
+    f"[{_FORBIDDEN}]|_(?=x[0-9A-Fa-f]{{4}}[_{_FORBIDDEN}])"
 )
 
 

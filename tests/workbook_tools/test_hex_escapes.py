@@ -36,6 +36,7 @@ def test_escapes_are_read(written: str, meant: str) -> None:
         ("a\rb", "a_x000D_b"),
         ("_x0041_", "_x005F_x0041_"),
         ("_x41_", "_x41_"),
+        ("_x0041\x01", "_x005F_x0041_x0001_"),
         ("\uffff", "_xFFFF_"),
     ],
 )
