@@ -108,8 +108,10 @@ def a_table(book: Workbook) -> None:
 
 
 def sparse(book: Workbook) -> None:
-    """Objects with gaps between them; and an empty sheet."""
-    write_log(book, bare_notes=True)
+    """Objects with gaps between them, styled cells with nothing in them; and an empty sheet."""
+    sheet = write_log(book, bare_notes=True)
+    for row in range(FIRST_ROW, LAST_ROW + 1):
+        sheet.write_blank(row, 4, None, book.add_format({"bg_color": "#FFD"}))
     book.add_worksheet("Empty")
 
 

@@ -95,7 +95,7 @@ def oddly_written(text: str) -> str:
         "<row r='3'", "<!-- <row r='3'> the \"header\" --><?log keep='3>2'?><row r='3'"
     )
     head = head.replace("<sheetView ", "<sheetView rightToLeft = '0' ")
-    return "\ufeff" + head + data.replace("</v >", "</v >") + "<!-- end of rows -->" + tail
+    return "\ufeff" + head + data + "<!-- end of rows -->" + tail
 
 
 def with_empty_elements(text: str) -> str:
@@ -103,7 +103,7 @@ def with_empty_elements(text: str) -> str:
     text = re.sub(r'<row r="(6|7)"([^>]*)>.*?</row>', r'<row r="\1"\2/>', text)
     text = re.sub(r'<row r="8"[^>]*>.*?</row>', "", text)
     text = re.sub(r'<row r="9"([^>]*)>.*?</row>', r'<row r="9"\1></row>', text)
-    return re.sub(r'(<c r="D1[0-4]") s="(\d+)"/>', r'\1 s="\2"></c>', text)
+    return re.sub(r'(<c r="E1[0-2]" s="\d+")/>', r"\1></c>", text)
 
 
 def with_shared_formulas(text: str) -> str:
