@@ -19,6 +19,9 @@ MAX_DEPTH = 256
 _SEPARATOR = "\x1f"  # no XML name or namespace can hold it
 _START_TAG = re.compile(rb"""<(?:[^"'>]++|"[^"]*+"|'[^']*+')*+>""")
 _ATTRIBUTE = re.compile(rb"""\s([^\s=<>"'/]+)\s*+=\s*+(?:"([^"]*+)"|'([^']*+)')""")
+_ROOT = re.compile(
+    rb"""(?:[^<]|<\?.*?\?>|<!--.*?-->)*+<(?:([^\s<>/"':]+):)?([^\s<>/"':]+)[\s/>]""", re.DOTALL
+)
 _REFERENCE = re.compile(r"&(?:#x([0-9A-Fa-f]+)|#([0-9]+)|(amp|lt|gt|quot|apos));")
 _NAMED = {"amp": "&", "lt": "<", "gt": ">", "quot": '"', "apos": "'"}
 _TEXT_ESCAPES = str.maketrans({"&": "&amp;", "<": "&lt;", ">": "&gt;", "\r": "&#13;"})
@@ -132,6 +135,13 @@ def check_well_formed(xml: bytes, part: str) -> None:
         Refusal: not UTF-8, a document type definition, or not well-formed.
     """
     _feed(_guarded_parser(part), [memoryview(xml)], part)
+
+
+def root_name(xml: bytes) -> tuple[str, str]:
+    """Return prefix and local name of the root element of a well-formed part of any size."""
+    match = _ROOT.match(xml)
+    assert match is not None  # a well-formed part has one
+    return (match[1] or b"").decode(), match[2].decode()
 
 
 def set_attribute(

@@ -20,6 +20,7 @@ from workbook_tools.xml_offsets import (
     escape_text,
     parse,
     qualified,
+    root_name,
     set_attribute,
     unescape,
 )
@@ -232,6 +233,18 @@ def test_utf8_is_let_in_with_or_without_mark_and_declaration() -> None:
     for xml in (b"<a/>", b'<?xml version="1.0" encoding="utf-8"?><a/>', b"\xef\xbb\xbf<a/>"):
         check_well_formed(xml, "p")
         assert parse(xml, "p").start == xml.index(b"<a/>")
+
+
+@pytest.mark.parametrize(
+    ("xml", "name"),
+    [
+        (b"<a/>", ("", "a")),
+        (b"\xef\xbb\xbf<?xml version='1.0'?>\n<x:a b='c:d'>", ("x", "a")),
+        (b"<!-- <no> --><?go <no/>?>\r\n<a\n b=''></a>", ("", "a")),
+    ],
+)
+def test_the_name_of_the_root_is_found_without_parsing(xml: bytes, name: tuple[str, str]) -> None:
+    assert root_name(xml) == name
 
 
 def test_nesting_is_limited() -> None:
