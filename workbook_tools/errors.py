@@ -13,4 +13,4 @@ class Refusal(EpochconvError):
 
 
 class UsageError(EpochconvError):
-    """The call is wrong or ambiguous: an unknown heading, two candidates, a missing choice (exit code 2)."""
+    """The call is wrong or leaves a choice open, such as two candidates (exit code 2)."""

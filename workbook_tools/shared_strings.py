@@ -66,7 +66,7 @@ class SharedStrings:
         """Return the number of texts, counted, since the file's own count is often wrong."""
         return len(self._starts) - 1
 
-    def read(self, number: int) -> TypedText:
+    def __getitem__(self, number: int) -> TypedText:
         """Return one text.
 
         Raises:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Iterator
 from enum import StrEnum
 from typing import NamedTuple
 
@@ -32,7 +32,7 @@ class Edit(NamedTuple):
     new: bytes
 
 
-def spliced(original: bytes, edits: Sequence[Edit]) -> Iterator[bytes | memoryview]:
+def spliced(original: bytes, edits: Iterable[Edit]) -> Iterator[bytes | memoryview]:
     """Yield the pieces of the edited part in order, without a second copy of the original.
 
     Args:
@@ -45,7 +45,7 @@ def spliced(original: bytes, edits: Sequence[Edit]) -> Iterator[bytes | memoryvi
     position = 0
     for edit in edits:
         if not position <= edit.start <= edit.end <= len(original):
-            raise ValueError(f"edit {edit.kind} at {edit.start}:{edit.end} overlaps or runs outside")
+            raise ValueError(f"{edit.kind} at {edit.start}:{edit.end} overlaps or runs outside")
         if edit.start > position:
             yield view[position : edit.start]
         if edit.new:

@@ -1,0 +1,158 @@
+"""The command `epochbook`: arguments, call, print, exit code."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import sys
+from collections.abc import Sequence
+from pathlib import Path
+
+from epochconv import __version__
+from epochconv.errors import EpochconvError
+
+_DESCRIPTION = "Fill columns of a shared observing log and change nothing else in the workbook."
+_FILL = """\
+Fill the columns that a log's headings ask for: empty columns and the blanks of partly filled ones,
+and new columns named with --add. A heading is a measure and its unit: Lookback time [Gyr],
+Age (Gyr), D_C / Mpc, T_CMB [K], z.
+"""
+_EXAMPLES = """\
+examples:
+  epochbook fill log.xlsx
+  epochbook fill log.xlsx --add "Age [Gyr]" --add "D_C [Gly]" --output filled.xlsx
+  epochbook fill log.xlsx --sheet Spring --source "z" --parameters "round numbers"
+  epochbook fill log.xlsx --source C:C --as redshift --add "Lookback time [Gyr]"
+
+exit codes: 0 nothing was left; 3 some cells were left with a reason; 2 wrong usage; 1 refused, the
+file is untouched
+"""
+
+
+def main(arguments: Sequence[str] | None = None) -> int:
+    """Run the command and return its exit code."""
+    for stream in (sys.stdout, sys.stderr):
+        reconfigure = getattr(stream, "reconfigure", None)
+        if reconfigure is not None:
+            reconfigure(errors="replace")
+    options = _parser().parse_args(arguments)
+    try:
+        return _fill(options)
+    except BrokenPipeError:
+        sys.stderr.close()
+        return 0
+    except KeyboardInterrupt:
+        return 130
+
+
+def _parser() -> argparse.ArgumentParser:
+    parser = argparse.ArgumentParser(prog="epochbook", description=_DESCRIPTION)
+    parser.add_argument("--version", action="version", version=f"%(prog)s {__version__}")
+    commands = parser.add_subparsers(required=True, metavar="COMMAND")
+    fill = commands.add_parser(
+        "fill",
+        help="fill columns of a workbook",
+        description=_FILL,
+        epilog=_EXAMPLES,
+        formatter_class=argparse.RawDescriptionHelpFormatter,
+    )
+    add = fill.add_argument
+    add("file", type=Path, metavar="FILE", help="the workbook (.xlsx, .xlsm, .xltx, .xltm)")
+    add(
+        "--output",
+        type=Path,
+        metavar="FILE",
+        help="write a new file; by default FILE is replaced"
+        " in one step and a dated copy of it kept beside it, the last five of them",
+    )
+    add(
+        "--add",
+        action="append",
+        default=[],
+        metavar="HEADING",
+        help="append this column at the right edge of the data (repeatable)",
+    )
+    add(
+        "--only",
+        action="append",
+        default=[],
+        metavar="HEADING",
+        help="of the existing columns fill only this one (repeatable)",
+    )
+    add("--source", metavar="HEADING", help="column to convert from: heading, or letters as C:C")
+    add(
+        "--as",
+        dest="source_measure",
+        metavar="MEASURE",
+        help="what the source column holds, whatever its heading says: redshift, 'age [Gyr]'",
+    )
+    add(
+        "--side",
+        choices=("nearer", "farther"),
+        help="which epoch, where one source value stands for two (angular diameter distance)",
+    )
+    add(
+        "--sheet",
+        metavar="NAME",
+        help="sheet to fill; by default every visible one that has something to fill",
+    )
+    add("--header-row", type=int, metavar="N", help="row of the headings; by default it is found")
+    add(
+        "--parameters",
+        metavar="SET",
+        help="parameter set: planck 2018 (the default), planck 2018"
+        " with bao, wmap 2013, distance ladder 2022, round numbers, evolving dark energy 2025",
+    )
+    add("--report", type=Path, metavar="FILE", help="write all that was done as JSON")
+    add("--allow-protected", action="store_true", help="fill protected sheets too")
+    add(
+        "--ignore-lock",
+        action="store_true",
+        help="go on though an owner file says that somebody has the workbook open",
+    )
+    return parser
+
+
+def _fill(options: argparse.Namespace) -> int:
+    # Imported here, so that --help answers at once.
+    from workbook_tools.errors import Refusal
+    from workbook_tools.filling import fill
+    from workbook_tools.report import json_report, text_report
+
+    try:
+        result = fill(
+            options.file,
+            output=options.output,
+            sheet=options.sheet,
+            header_row=options.header_row,
+            add=options.add,
+            only=options.only,
+            source=options.source,
+            source_measure=options.source_measure,
+            parameters=options.parameters,
+            side=options.side,
+            allow_protected=options.allow_protected,
+            ignore_lock=options.ignore_lock,
+        )
+    except Refusal as error:
+        return _complain(error, 1)
+    except EpochconvError as error:
+        return _complain(error, 2)
+    print(text_report(result))
+    if options.report is not None:
+        text = json.dumps(json_report(result), ensure_ascii=False, allow_nan=False, indent=1)
+        try:
+            options.report.write_text(text + "\n", encoding="utf-8")
+        except OSError as error:
+            reason = error.strerror or "unknown"
+            print(
+                f"epochbook: the report {options.report} was not written ({reason})",
+                file=sys.stderr,
+            )
+            return 1
+    return 3 if result.left else 0
+
+
+def _complain(error: Exception | str, code: int) -> int:
+    print(f"epochbook: {error}", file=sys.stderr)
+    return code

@@ -1,0 +1,129 @@
+"""A workbook opened for reading: its parts, its map, and its sheets as logs."""
+
+from __future__ import annotations
+
+import functools
+from pathlib import Path
+
+from workbook_tools.archive import Archive
+from workbook_tools.cell_address import Range, parse_range
+from workbook_tools.errors import Refusal, UsageError
+from workbook_tools.parts import Sheet, SheetKind, SheetState, read_workbook, table_parts
+from workbook_tools.relations import Named, relations_of
+from workbook_tools.shared_strings import SharedStrings
+from workbook_tools.sheet_reading import Context, SheetReading
+from workbook_tools.sheet_scan import SheetScan
+from workbook_tools.styles import StyleSheet
+from workbook_tools.tables import Table, read_table
+from workbook_tools.xml_offsets import parse
+
+
+class OpenWorkbook:
+    """One workbook.
+
+    Attributes:
+        archive: the file.
+        map: where everything is.
+        styles: the style sheet, None where the workbook has none.
+    """
+
+    def __init__(self, path: Path) -> None:
+        """Open a workbook.
+
+        Raises:
+            Refusal: it is none, or one that cannot be filled without harm.
+        """
+        self.archive = Archive.open(path)
+        self.label = self.archive.label
+        self._large: dict[str, bytes] = {}
+        self.map = read_workbook(self.archive)
+        part = self.map.styles_part
+        self.styles = None if part is None else StyleSheet(self.archive.read(part), part)
+
+    def find(self, name: str) -> Named | None:
+        """Return the member of that name, whatever its case."""
+        return self.archive.find(name)
+
+    def read(self, name: str) -> bytes:
+        """Return the content of a part; that of a sheet which is still held is not read again."""
+        held = self._large.get(name)
+        return self.archive.read(name) if held is None else held
+
+    def hold(self, name: str, xml: bytes) -> None:
+        """Keep the content of a part that will be needed again."""
+        self._large[name] = xml
+
+    def sheets(self, name: str | None) -> list[Sheet]:
+        """Return the sheets that may be filled: the visible worksheets, or the one of that name.
+
+        Raises:
+            UsageError: there is no sheet of that name.
+            Refusal: the sheet of that name is no worksheet.
+        """
+        if name is None:
+            return [
+                sheet
+                for sheet in self.map.sheets
+                if sheet.kind is SheetKind.WORKSHEET and sheet.state is SheetState.VISIBLE
+            ]
+        named = [sheet for sheet in self.map.sheets if sheet.name.casefold() == name.casefold()]
+        if not named:
+            listed = ", ".join(repr(sheet.name) for sheet in self.map.sheets)
+            raise UsageError(f"{self.label} has no sheet {name!r}; it has {listed}")
+        if named[0].kind is not SheetKind.WORKSHEET:
+            raise Refusal(f"sheet {name!r} is a {named[0].kind} and holds no cells to fill")
+        return named
+
+    def reading(self, sheet: Sheet, header_row: int | None) -> SheetReading:
+        """Read one sheet as a log.
+
+        Raises:
+            Refusal: the sheet or one of its tables cannot be read.
+            UsageError: the header row that is given holds nothing.
+        """
+        scan = SheetScan(self.archive.read(sheet.part), sheet.part)
+        return SheetReading(
+            sheet, scan, self._tables(sheet), self._pivots(sheet), self._context, header_row
+        )
+
+    def is_protected(self, reading: SheetReading) -> bool:
+        """Tell whether a sheet is protected against changes."""
+        protection = reading.scan.outline.find("sheetProtection")
+        return protection is not None and protection.flag("sheet")
+
+    @functools.cached_property
+    def _context(self) -> Context:
+        return Context(self._text_of, self._is_date)
+
+    @functools.cached_property
+    def _strings(self) -> SharedStrings | None:
+        part = self.map.shared_strings_part
+        return None if part is None else SharedStrings(self.archive.read(part), part)
+
+    def _text_of(self, number: int) -> str:
+        strings = self._strings
+        if strings is None:
+            raise Refusal(
+                f"{self.label}: a cell shows text number {number}, but the workbook has no list of"
+                " texts; open it in its own program, let it repair the file and save it again"
+            )
+        return strings[number].text
+
+    def _is_date(self, style: int) -> bool:
+        return self.styles is not None and self.styles.is_date(style)
+
+    def _tables(self, sheet: Sheet) -> list[Table]:
+        return [
+            read_table(self.archive.read(part), part) for part in table_parts(self.archive, sheet)
+        ]
+
+    def _pivots(self, sheet: Sheet) -> list[Range]:
+        """Return the rectangles of pivot tables, which their program rewrites at will."""
+        ranges = []
+        for relation in relations_of(self.archive, sheet.part):
+            if relation.kind == "pivotTable" and relation.part is not None:
+                root = parse(self.archive.read(relation.part), relation.part)
+                location = root.find("location")
+                if location is not None and "ref" in location.attributes:
+                    ranges.append(parse_range(location.attributes["ref"]))
+        return ranges

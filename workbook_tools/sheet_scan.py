@@ -1,0 +1,326 @@
+"""Where rows and cells lie in the bytes of a sheet; knows no meaning.
+
+A sheet of 50 MB is not turned into objects: its rows are found once, and cells are looked up in
+the bytes. The look-up may use plain searches because the part has been checked to be well-formed
+and comments and the like are blanked out first (in a copy of equal length).
+"""
+
+from __future__ import annotations
+
+import re
+from array import array
+from bisect import bisect_left, bisect_right
+from collections.abc import Iterator
+from typing import NamedTuple
+
+from workbook_tools.cell_address import column_number
+from workbook_tools.errors import Refusal
+from workbook_tools.shared_strings import read_text
+from workbook_tools.xml_offsets import Element, check_well_formed, parse, unescape
+
+_ATTRIBUTES = rb"""((?:[^"'>]++|"[^"]*+"|'[^']*+')*+)"""
+_ATTRIBUTE = re.compile(rb"""(?:^|\s)([^\s=<>"'/]+)\s*+=\s*+(?:"([^"]*+)"|'([^']*+)')""")
+_SHEET_DATA = re.compile(rb"<(?:[\w.\-]+:)?sheetData(?=[\s/>])" + _ATTRIBUTES + rb">")
+_HIDDEN = re.compile(rb"<!--.*?-->|<\?.*?\?>|<!\[CDATA\[(.*?)\]\]>", re.DOTALL)
+_LETTERS = re.compile(rb"\$?([A-Za-z]+)\$?([0-9]+)")
+
+# What stands in the blanked copy for the markup of a CDATA section and for the signs inside it.
+# XML has no such characters of its own.
+_FILLER = b"\x00"
+_CDATA_SIGNS = bytes.maketrans(b"<&>", b"\x01\x02\x03")
+_CDATA_BACK = {1: "<", 2: "&", 3: ">"}
+
+
+class CellSpan(NamedTuple):
+    """One cell element.
+
+    Attributes:
+        column: counted from 1.
+        start, tag_end, end: the element is `start:end`, its start tag `start:tag_end`.
+        style: number of its format; 0 where it has none.
+        type: the `t` attribute; "n" where it has none.
+        explicit: whether it says its own address.
+    """
+
+    column: int
+    start: int
+    tag_end: int
+    end: int
+    style: int
+    type: str
+    explicit: bool
+
+
+class SheetScan:
+    """The rows of a sheet and what surrounds them.
+
+    Attributes:
+        xml: the part.
+        part: its name.
+        outline: the tree of the sheet without its rows; offsets count in `xml`.
+        data: the sheetData element of the outline.
+        numbers: row numbers, ascending.
+        starts, tag_ends, content_ends, ends: offsets of each row element, its start tag, and the
+            place before its end tag (the end of the start tag where the row is `<row/>`).
+        rows_explicit: whether every row says its own number.
+        cells_regular: whether every cell starts with its address, so that cells can be searched.
+    """
+
+    def __init__(self, xml: bytes, part: str) -> None:
+        """Scan a sheet.
+
+        Raises:
+            Refusal: not UTF-8, not well-formed, a document type definition, or rows that are out of
+                order or written in a way that is not known here.
+        """
+        check_well_formed(xml, part)
+        self.xml = xml
+        self.part = part
+        self._find_data()
+        self.plain = _blanked(xml, self.data.start_tag_end, self.data.end_tag_start)
+        prefix = self.data.prefix.encode() + b":" if self.data.prefix else b""
+        self._prefix = prefix
+        self._row_tag = re.compile(b"<" + prefix + rb"row(?=[\s/>])" + _ATTRIBUTES + b">")
+        self._cell_tag = re.compile(b"<" + prefix + rb"c(?=[\s/>])" + _ATTRIBUTES + b">")
+        self._cell_close = re.compile(b"</" + prefix + rb"c\s*>")
+        self._value = re.compile(
+            b"<" + prefix + rb"v(?:\s" + _ATTRIBUTES + rb")?>([^<]*+)</" + prefix + rb"v\s*>"
+        )
+        self._inline = re.compile(
+            b"<" + prefix + rb"is(?=[\s>]).*?</" + prefix + rb"is\s*>", re.DOTALL
+        )
+        self.formula_tag = re.compile(b"<" + prefix + rb"f(?=[\s/>])" + _ATTRIBUTES + b">")
+        self._opening = b"<" + prefix + b'c r="'
+        self._start = re.compile(re.escape(self._opening) + rb"([A-Z]+)")
+        self._find_rows()
+        self.cells_regular = self.rows_explicit and self._cells_are_regular()
+
+    def __len__(self) -> int:
+        """Return the number of row elements."""
+        return len(self.numbers)
+
+    def cells(self, index: int) -> list[CellSpan]:
+        """Return the cells of the row element with that index, left to right.
+
+        Raises:
+            Refusal: the cells are out of order.
+        """
+        plain, position, limit = self.plain, self.tag_ends[index], self.content_ends[index]
+        spans: list[CellSpan] = []
+        column = 0
+        while (match := self._cell_tag.search(plain, position, limit)) is not None:
+            attributes = attributes_of(match[1])
+            address = _LETTERS.fullmatch(attributes.get("r", b""))
+            following = column_number(address[1].decode()) if address else column + 1
+            if following <= column or (address and int(address[2]) != self.numbers[index]):
+                raise self._disordered(f"row {self.numbers[index]}")
+            column = following
+            position = match.end()
+            if not match[0].endswith(b"/>"):
+                close = self._cell_close.search(plain, position, limit)
+                if close is None:
+                    raise self._disordered(f"row {self.numbers[index]}")
+                position = close.end()
+            spans.append(
+                CellSpan(
+                    column,
+                    match.start(),
+                    match.end(),
+                    position,
+                    int(attributes.get("s", b"0")),
+                    attributes.get("t", b"n").decode(),
+                    address is not None,
+                )
+            )
+        return spans
+
+    def find_cell(self, index: int, letters: bytes) -> CellSpan | None:
+        """Return the cell in that column of the row, by plain search; for regular cells only."""
+        address = b"%b%d" % (letters, self.numbers[index])
+        start = self.plain.find(
+            self._opening + address + b'"', self.tag_ends[index], self.content_ends[index]
+        )
+        if start < 0:
+            return None
+        match = self._cell_tag.match(self.plain, start)
+        assert match is not None
+        attributes = attributes_of(match[1])
+        end = match.end()
+        if not match[0].endswith(b"/>"):
+            close = self._cell_close.search(self.plain, end, self.content_ends[index])
+            if close is None:
+                raise self._disordered(address.decode())
+            end = close.end()
+        return CellSpan(
+            column_number(letters.decode()),
+            start,
+            match.end(),
+            end,
+            int(attributes.get("s", b"0")),
+            attributes.get("t", b"n").decode(),
+            True,
+        )
+
+    def cell_starts(self, index: int) -> Iterator[tuple[bytes, int]]:
+        """Yield column letters and offset of each cell of the row; for regular cells only."""
+        for match in self._start.finditer(
+            self.plain, self.tag_ends[index], self.content_ends[index]
+        ):
+            yield match[1], match.start()
+
+    def last_letters(self, index: int) -> bytes:
+        """Return the column letters of the row's last cell, b"" for none; regular cells only."""
+        start = self.plain.rfind(self._opening, self.tag_ends[index], self.content_ends[index])
+        if start < 0:
+            return b""
+        match = self._start.match(self.plain, start)
+        if match is None or not self.plain.startswith(b'%d"' % self.numbers[index], match.end()):
+            raise self._disordered(f"row {self.numbers[index]}")
+        return match[1]
+
+    def rows_between(self, first: int, last: int) -> range:
+        """Return the indices of the row elements with numbers from `first` to `last`."""
+        return range(bisect_left(self.numbers, first), bisect_right(self.numbers, last))
+
+    def reaches(self, index: int, column: int) -> bool:
+        """Tell whether the row may have a cell in that column or right of it."""
+        if not self.cells_regular:
+            return True
+        last = self.last_letters(index)
+        return bool(last) and column_number(last.decode()) >= column
+
+    def is_empty(self, cell: CellSpan) -> bool:
+        """Tell whether a cell element holds nothing: no value, no formula, no text."""
+        if cell.end == cell.tag_end:
+            return True
+        content = self.plain[cell.tag_end : cell.end]
+        close = content.rindex(b"</")
+        inner = content[:close].replace(_FILLER, b"").strip()
+        return not inner or re.fullmatch(b"<" + self._prefix + rb"v\s*/>", inner) is not None
+
+    def value_text(self, cell: CellSpan) -> str | None:
+        """Return the text of the cell's `v` element, None where it has none."""
+        match = self._value.search(self.plain, cell.tag_end, cell.end)
+        return None if match is None else _decoded(match[2])
+
+    def inline_text(self, cell: CellSpan) -> str:
+        """Return the text of an inline string, its runs joined and phonetic hints left out."""
+        match = self._inline.search(self.plain, cell.tag_end, cell.end)
+        return "" if match is None else read_text(self.xml[match.start() : match.end()]).text
+
+    def formula(self, cell: CellSpan) -> str | None:
+        """Return the formula text of a cell ("" for a child of a shared one), None for none."""
+        match = self.formula_tag.search(self.plain, cell.tag_end, cell.end)
+        if match is None:
+            return None
+        if match[0].endswith(b"/>"):
+            return ""
+        return _decoded(self.plain[match.end() : self.plain.index(b"<", match.end())])
+
+    def row_attributes(self, index: int) -> dict[str, bytes]:
+        """Return the attributes of a row element."""
+        match = self._row_tag.match(self.plain, self.starts[index])
+        assert match is not None
+        return attributes_of(match[1])
+
+    def row_attribute_span(self, index: int, name: bytes) -> tuple[int, int] | None:
+        """Return where the value of a row's attribute lies, None where the row has none."""
+        for match in _ATTRIBUTE.finditer(self.xml, self.starts[index], self.tag_ends[index]):
+            if match[1] == name:
+                return match.span(2) if match[2] is not None else match.span(3)
+        return None
+
+    def _find_data(self) -> None:
+        opening = _SHEET_DATA.search(self.xml)
+        name = opening[0][1:].split(b"sheetData")[0] if opening is not None else b""
+        closing = self.xml.rfind(b"</" + name + b"sheetData") if opening is not None else -1
+        skipped = range(0)
+        if opening is not None and not opening[0].endswith(b"/>"):
+            skipped = range(opening.end(), closing)
+        self.outline = parse(self.xml, self.part, skipped=skipped)
+        data = self.outline.find("sheetData")
+        if data is None or opening is None or data.start != opening.start():
+            raise Refusal(
+                f"{self.part} is written in a way that is not known here (its rows are not found);"
+                " open the workbook in its own program, save it and try again."
+            )
+        self.data: Element = data
+
+    def _find_rows(self) -> None:
+        self.numbers, self.starts, self.tag_ends = array("q"), array("q"), array("q")
+        self.content_ends, self.ends = array("q"), array("q")
+        self.rows_explicit = True
+        plain, limit = self.plain, self.data.end_tag_start
+        position, number = self.data.start_tag_end, 0
+        find_tag, closing = self._row_tag.search, b"</" + self._prefix + b"row"
+        row_number = re.compile(rb"""(?:^|\s)r\s*=\s*["']\s*(\d+)""")
+        while (match := find_tag(plain, position, limit)) is not None:
+            said = row_number.search(match[1])
+            following = int(said[1]) if said is not None else number + 1
+            self.rows_explicit &= said is not None
+            if following <= number:
+                raise self._disordered(f"row {following}")
+            number = following
+            tag_end = content_end = position = match.end()
+            if plain[tag_end - 2 : tag_end] != b"/>":
+                content_end = plain.find(closing, tag_end, limit)
+                position = plain.find(b">", content_end, limit) + 1
+                if content_end < 0 or position == 0:
+                    raise self._disordered(f"row {number}")
+            self.numbers.append(number)
+            self.starts.append(match.start())
+            self.tag_ends.append(tag_end)
+            self.content_ends.append(content_end)
+            self.ends.append(position)
+        if not len(self.numbers) and plain[self.data.start_tag_end : limit].strip(
+            _FILLER + b" \r\n\t"
+        ):
+            raise self._disordered("its rows")
+
+    def _cells_are_regular(self) -> bool:
+        """Tell whether every `<c` is followed by its address, in capitals."""
+        start, end = self.data.start_tag_end, self.data.end_tag_start
+        stem = self._opening[:-4]
+        addressed = self.plain.count(self._opening, start, end)
+        others = sum(
+            self.plain.count(stem + sign, start, end) for sign in (b"\t", b"\n", b"\r", b">", b"/")
+        )
+        return addressed == self.plain.count(stem + b" ", start, end) and not others
+
+    def _disordered(self, where: str) -> Refusal:
+        return Refusal(
+            f"{self.part} has rows or cells out of order ({where}); open the workbook in its own"
+            " program, let it repair the file and save it again."
+        )
+
+
+def attributes_of(raw: bytes) -> dict[str, bytes]:
+    """Return the attributes that stand in the inside of a start tag, as they are written."""
+    return {
+        match[1].decode(): match[2] if match[2] is not None else match[3]
+        for match in _ATTRIBUTE.finditer(raw)
+    }
+
+
+def _decoded(raw: bytes) -> str:
+    """Turn the bytes between two tags into text."""
+    text = raw.replace(_FILLER, b"")
+    return unescape(text.decode()).translate(_CDATA_BACK)
+
+
+def _blanked(xml: bytes, start: int, end: int) -> bytes:
+    """Return the part with comments, processing instructions and CDATA marks between the offsets
+    blanked out, every other byte in its place; the part itself where there are none.
+    """
+    if all(xml.find(sign, start, end) < 0 for sign in (b"<!", b"<?")):
+        return xml
+    pieces, position = [xml[:start]], start
+    for match in _HIDDEN.finditer(xml, start, end):
+        pieces.append(xml[position : match.start()])
+        body = match[1]
+        if body is None:
+            pieces.append(_FILLER * len(match[0]))
+        else:
+            pieces += [_FILLER * 9, body.translate(_CDATA_SIGNS), _FILLER * 3]
+        position = match.end()
+    return b"".join([*pieces, xml[position:]])

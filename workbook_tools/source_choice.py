@@ -1,0 +1,105 @@
+"""Which column a sheet's new values are converted from; two that could serve are never guessed."""
+
+from __future__ import annotations
+
+import re
+
+from workbook_tools.cell_address import column_letters, column_number
+from workbook_tools.errors import UsageError
+from workbook_tools.headings import Heading, lacks_unit, read_heading, same_heading
+from workbook_tools.request import Request
+from workbook_tools.sheet_reading import SheetReading
+from workbook_tools.typed_cells import NUMBER, ColumnCells
+
+_LETTERS = re.compile(r"\$?([A-Za-z]{1,3}):\$?([A-Za-z]{1,3})")
+
+
+def named_source(reading: SheetReading, request: Request) -> tuple[int, Heading] | None:
+    """Return the column that the request names and what it holds; None where the sheet lacks it.
+
+    Raises:
+        UsageError: the name fits two columns, or what the column holds is not known.
+    """
+    assert request.source is not None
+    meaning = None
+    if request.source_measure is not None:
+        meaning = known_heading(request.source_measure, "--as")
+    letters = _LETTERS.fullmatch(request.source.strip())
+    if letters is not None:
+        if letters[1].upper() != letters[2].upper():
+            raise UsageError(f"--source {request.source} is more than one column; name one, as C:C")
+        column = column_number(letters[1])
+    else:
+        fitting = [c for c, text in reading.texts.items() if same_heading(text, request.source)]
+        if len(fitting) > 1:
+            listed = " and ".join(f"{column_letters(c)}:{column_letters(c)}" for c in fitting)
+            raise UsageError(
+                f"sheet {reading.sheet.name!r} has the heading {request.source!r} more than once;"
+                f" name the column by its letters with --source: {listed}"
+            )
+        if not fitting:
+            return None
+        column = fitting[0]
+    heading = meaning or reading.headings.get(column)
+    if heading is None:
+        text = reading.texts.get(column, "nothing")
+        raise UsageError(
+            f"column {column_letters(column)} of sheet {reading.sheet.name!r} is headed"
+            f" {text!r}, which is no measure with a unit; say what it holds, as in"
+            " --as redshift or --as 'age [Gyr]'"
+        )
+    return column, heading
+
+
+def possible_sources(reading: SheetReading) -> list[int]:
+    """Return the recognised columns that hold numbers and do not themselves wait to be filled.
+
+    A column waits where another measure has something in all of its rows and in further ones.
+    Two columns of one measure in one unit (redshifts by two methods) never fill each other.
+    """
+    columns = reading.columns(list(reading.headings))
+    filled = {c.column: _filled_rows(c) for c in columns if c.count(NUMBER)}
+    return [
+        column
+        for column, rows in filled.items()
+        if not any(
+            rows < further and not reading.headings[other].same_kind(reading.headings[column])
+            for other, further in filled.items()
+        )
+    ]
+
+
+def refuse_several(reading: SheetReading, sources: list[int]) -> None:
+    """Raise where more than one column could serve.
+
+    Raises:
+        UsageError: it lists them.
+    """
+    if len(sources) > 1:
+        listed = ", ".join(
+            f"{reading.headings[column].text!r} ({column_letters(column)})" for column in sources
+        )
+        raise UsageError(
+            f"sheet {reading.sheet.name!r} has {len(sources)} columns to convert from: {listed};"
+            " choose one with --source"
+        )
+
+
+def known_heading(text: str, option: str) -> Heading:
+    """Return what a heading given on the command line says.
+
+    Raises:
+        UsageError: it is no measure with a unit.
+    """
+    heading = read_heading(text)
+    if heading is None:
+        measure = lacks_unit(text)
+        hint = "write a measure and its unit, as in 'Age [Gyr]' or 'redshift'"
+        if measure is not None:
+            hint = f"{measure.name} needs a unit: '{text.strip()} [{measure.unit}]'"
+        raise UsageError(f"{option} {text!r} is no heading that is known here; {hint}")
+    return heading
+
+
+def _filled_rows(cells: ColumnCells) -> frozenset[int]:
+    return frozenset(p for p in range(len(cells.kinds)) if not cells.is_blank(p))
