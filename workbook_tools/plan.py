@@ -10,6 +10,7 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 
 import numpy as np
+from numpy.typing import NDArray
 
 from workbook_tools import agreement, source_choice
 from workbook_tools.answers import Moments
@@ -25,6 +26,9 @@ from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import GENERAL, StyleSheet
 from workbook_tools.tables import Table, free_names
 from workbook_tools.typed_cells import LEFT, NUMBER, ColumnCells
+
+IndexArray = NDArray[np.intp]
+BoolArray = NDArray[np.bool_]
 
 
 @dataclass(frozen=True)
@@ -247,7 +251,7 @@ class _Filler:
         self,
         heading: Heading,
         column: int,
-        blank: np.ndarray,
+        blank: BoolArray,
         target: ColumnCells | None,
     ) -> NewCells:
         """Add a column's new cells to the plan; `blank` tells where there is room for one."""
@@ -257,9 +261,9 @@ class _Filler:
         cells = NewCells(column)
         numbers = self.reading.scan.numbers
         start = self.reading.rows.start
-        cells.rows = array("q", [numbers[start + p] for p in positions.tolist()])
+        cells.rows = array("q", np.array(numbers)[start + positions].tobytes())
         cells.numbers = array("d", values[positions].tobytes())
-        cells.styles = self._styles_of(column, positions.tolist(), cells.numbers, target)
+        cells.styles = self._styles_of(column, positions, cells.numbers, target)
         self.plan.cells.append(cells)
         for position, reason in missing.items():
             if blank[position]:
@@ -273,7 +277,7 @@ class _Filler:
     def _styles_of(
         self,
         column: int,
-        positions: list[int],
+        positions: IndexArray,
         values: Sequence[float],
         target: ColumnCells | None,
     ) -> array[int]:
@@ -285,23 +289,22 @@ class _Filler:
         if self.styles is None:
             return array("q", bytes(8 * len(positions)))
         code = format_for(values, self.digits)
-        known: dict[int, int] = {}
-        above = -1
+        models = np.array(self.source.styles)[positions]
         if target is not None:
-            typed = [p for p, kind in enumerate(target.kinds) if kind == NUMBER]
-            above = target.styles[typed[-1]] if typed else -1
-        plain = column_style(self.reading.scan, column)
-        result = array("q")
-        for position in positions:
-            model = self.source.styles[position]
-            if target is not None:
-                own = target.styles[position]
-                model = own if own > 0 else above if above >= 0 else own if own >= 0 else plain
-            style = known.get(model)
-            if style is None:
-                style = known[model] = self._formatted(model, code, keep=target is not None)
-            result.append(style)
-        return result
+            models = self._own_models(column, positions, target)
+        kinds, places = np.unique(models, return_inverse=True)
+        styles = [self._formatted(int(one), code, keep=target is not None) for one in kinds]
+        return array("q", np.array(styles, dtype=np.int64)[places].tobytes())
+
+    def _own_models(
+        self, column: int, positions: IndexArray, target: ColumnCells
+    ) -> NDArray[np.int64]:
+        """Return the styles after which blanks of an existing column take their look."""
+        own = np.array(target.styles)[positions]
+        typed = np.flatnonzero(np.frombuffer(target.kinds, dtype=np.uint8) == NUMBER)
+        if len(typed):
+            return np.where(own > 0, own, target.styles[int(typed[-1])])
+        return np.where(own >= 0, own, column_style(self.reading.scan, column))
 
     def _formatted(self, model: int, code: str, *, keep: bool) -> int:
         assert self.styles is not None

@@ -61,6 +61,6 @@ def _is_free(reading: SheetReading, wanted: Range, growing: Table | None) -> boo
     return not any(
         wanted.first_column <= cell.column <= wanted.last_column and not scan.is_empty(cell)
         for index in scan.rows_between(wanted.first_row, wanted.last_row)
-        if scan.reaches(index, wanted.first_column)
+        if scan.last_columns[index] >= wanted.first_column
         for cell in scan.cells(index)
     )

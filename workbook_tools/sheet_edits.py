@@ -7,14 +7,12 @@ from array import array
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 
-from workbook_tools.cell_address import Range, column_letters, column_number, parse_range
+from workbook_tools.cell_address import Range, column_letters, parse_range
 from workbook_tools.column_widths import width_edits
 from workbook_tools.errors import Refusal
 from workbook_tools.sheet_scan import CellSpan, SheetScan
 from workbook_tools.splice import Edit, EditKind
 from workbook_tools.xml_offsets import escape_text, qualified, set_attribute
-
-_SMALLEST = 2.2250738585072014e-308
 
 
 @dataclass
@@ -42,13 +40,6 @@ class NewCells:
         return Range(min(rows), self.column, max(rows), self.column)
 
 
-def number_bytes(value: float) -> bytes:
-    """Write a number with the 15 significant digits that spreadsheet programs keep."""
-    if abs(value) < _SMALLEST:
-        return b"0"
-    return b"%.15g" % value
-
-
 def edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
     """Yield the edits of a sheet that put new cells into it, in the order of the bytes.
 
@@ -71,68 +62,120 @@ def _position(edit: Edit) -> tuple[int, int]:
     return edit.start, edit.end
 
 
-class _Writer:
-    """Hands out the new cells row by row, as bytes."""
+class _Block:
+    """Columns that get numbers in the same rows, written together."""
 
-    def __init__(self, scan: SheetScan, new: list[NewCells]) -> None:
-        self.new = new
-        self.places = [0] * len(new)
-        self.letters = [column_letters(one.column).encode() for one in new]
-        prefix = scan.data.prefix.encode() + b":" if scan.data.prefix else b""
-        self.prefix = prefix
-        self.number_form = b'<%sc r="%%b%%d" s="%%d"><%sv>%%b</%sv></%sc>' % ((prefix,) * 4)
-        self.text_form = (
-            b'<%sc r="%%b%%d" s="%%d" t="inlineStr"><%sis><%st>%%b</%st></%sis></%sc>'
-            % ((prefix,) * 6)
+    def __init__(self, columns: list[NewCells], prefix: bytes) -> None:
+        self.rows = columns[0].rows
+        self.columns = [one.column for one in columns]
+        self.last = self.columns[-1]
+        self._letters = [column_letters(column).encode() for column in self.columns]
+        self._prefix = prefix
+        self._styles = zip(*(one.styles for one in columns), strict=True)
+        self._values = zip(
+            *(part for one in columns for part in (one.rows, one.numbers)), strict=True
         )
+        self._forms: dict[tuple[int, ...], list[bytes]] = {}
+        self._joined: dict[tuple[int, ...], bytes] = {}
+        self.place = 0
 
-    def all_rows(self) -> list[int]:
-        """Return the numbers of the rows that get cells, ascending."""
-        rows: set[int] = set()
-        for one in self.new:
-            rows.update(one.rows)
-            if one.heading is not None:
-                rows.add(one.heading[0])
-        return sorted(rows)
+    def next_together(self) -> bytes:
+        """Return the cells of the next row as one run of bytes."""
+        self.place += 1
+        styles = next(self._styles)
+        joined = self._joined.get(styles)
+        if joined is None:
+            joined = self._joined[styles] = b"".join(self._forms_for(styles))
+        return joined % next(self._values)
 
-    def cells(self, row: int) -> list[tuple[int, bytes]]:
-        """Return column and bytes of the new cells of a row; rows must be asked in order."""
-        found = []
-        for i, one in enumerate(self.new):
-            place = self.places[i]
-            if one.heading is not None and one.heading[0] == row:
-                _, text, style = one.heading
-                body = escape_text(text).encode()
-                found.append((one.column, self.text_form % (self.letters[i], row, style, body)))
-            elif place < len(one.rows) and one.rows[place] == row:
-                value = number_bytes(one.numbers[place])
-                cell = self.number_form % (self.letters[i], row, one.styles[place], value)
-                found.append((one.column, cell))
-                self.places[i] = place + 1
-        return found
+    def next_apart(self) -> list[tuple[int, bytes]]:
+        """Return column and bytes of each cell of the next row."""
+        self.place += 1
+        forms, values = self._forms_for(next(self._styles)), next(self._values)
+        return [
+            (column, form % values[2 * i : 2 * i + 2])
+            for i, (column, form) in enumerate(zip(self.columns, forms, strict=True))
+        ]
+
+    def _forms_for(self, styles: tuple[int, ...]) -> list[bytes]:
+        """Return a template for each cell: 15 significant digits, all that programs keep."""
+        forms = self._forms.get(styles)
+        if forms is None:
+            p = self._prefix
+            forms = self._forms[styles] = [
+                b'<%bc r="%b%%d" s="%d"><%bv>%%.15g</%bv></%bc>' % (p, letters, style, p, p, p)
+                for letters, style in zip(self._letters, styles, strict=True)
+            ]
+        return forms
+
+
+def _blocks(new: list[NewCells], prefix: bytes) -> list[_Block]:
+    """Group neighbouring columns that have the same rows."""
+    groups: list[list[NewCells]] = []
+    for one in new:
+        if one.rows and groups and groups[-1][0].rows == one.rows:
+            groups[-1].append(one)
+        elif one.rows:
+            groups.append([one])
+    return [_Block(group, prefix) for group in groups]
+
+
+def _headings(new: list[NewCells], prefix: bytes) -> dict[int, list[tuple[int, bytes]]]:
+    """Return column and bytes of each heading, by row."""
+    found: dict[int, list[tuple[int, bytes]]] = {}
+    p = prefix
+    for one in new:
+        if one.heading is not None:
+            row, text, style = one.heading
+            address = column_letters(one.column).encode()
+            cell = b'<%bc r="%b%d" s="%d" t="inlineStr"><%bis><%bt>%b</%bt></%bis></%bc>' % (
+                *(p, address, row, style),
+                *(p, p, escape_text(text).encode(), p, p, p),
+            )
+            found.setdefault(row, []).append((one.column, cell))
+    return found
 
 
 def _row_edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
-    writer = _Writer(scan, new)
+    prefix = scan.data.prefix.encode() + b":" if scan.data.prefix else b""
+    blocks, headings = _blocks(new, prefix), _headings(new, prefix)
+    rows = set(headings)
+    rows.update(*(block.rows for block in blocks))
+    spans = _SpansEdits(scan)
     missing: list[bytes] = []
-    index = 0
-    for row in writer.all_rows():
-        while index < len(scan) and scan.numbers[index] < row:
+    index, count, numbers = 0, len(scan), scan.numbers
+    for row in sorted(rows):
+        while index < count and numbers[index] < row:
             if missing:
                 yield _inserted_rows(scan, index, missing)
                 missing = []
             index += 1
-        cells = writer.cells(row)
-        if index < len(scan) and scan.numbers[index] == row:
-            if missing:
-                yield _inserted_rows(scan, index, missing)
-                missing = []
-            yield from _edits_of_row(scan, index, cells)
-            index += 1
+        busy = [b for b in blocks if b.place < len(b.rows) and b.rows[b.place] == row]
+        there = index < count and numbers[index] == row
+        if there and missing:
+            yield _inserted_rows(scan, index, missing)
+            missing = []
+        if there and len(busy) == 1 and row not in headings:
+            (block,) = busy
+            if scan.ends[index] > scan.tag_ends[index] and (
+                scan.last_columns[index] < block.columns[0]
+            ):
+                widened = spans.edit(index, block.columns[0], block.last)
+                if widened is not None:
+                    yield widened
+                position = scan.end_of_cells(index)
+                yield Edit(EditKind.CELL_INSERTED, position, position, block.next_together())
+                continue
+        cells = [cell for block in busy for cell in block.next_apart()] + headings.get(row, [])
+        cells.sort(key=lambda cell: cell[0])
+        if there:
+            yield from _edits_of_row(scan, index, cells, spans)
         else:
             body = b"".join(cell for _, cell in cells)
-            missing.append(b'<%brow r="%d">%b</%brow>' % (writer.prefix, row, body, writer.prefix))
+            missing.append(b'<%brow r="%d">%b</%brow>' % (prefix, row, body, prefix))
     if missing:
+        while index < count and numbers[index] < row:
+            index += 1
         yield _inserted_rows(scan, index, missing)
 
 
@@ -154,35 +197,19 @@ def _inserted_rows(scan: SheetScan, index: int, rows: list[bytes]) -> Edit:
     return Edit(EditKind.ROW_INSERTED, position, position, body)
 
 
-def _edits_of_row(scan: SheetScan, index: int, cells: list[tuple[int, bytes]]) -> Iterator[Edit]:
-    spans = _spans_edit(scan, index, cells[0][0], cells[-1][0])
-    if spans is not None:
-        yield spans
+def _edits_of_row(
+    scan: SheetScan, index: int, cells: list[tuple[int, bytes]], spans: _SpansEdits
+) -> Iterator[Edit]:
+    widened = spans.edit(index, cells[0][0], cells[-1][0])
+    if widened is not None:
+        yield widened
     tag_end = scan.tag_ends[index]
-    if scan.ends[index] == tag_end:
-        closing = b"</%brow>" % (scan.data.prefix.encode() + b":" if scan.data.prefix else b"")
-        body = b"".join(cell for _, cell in cells)
-        yield Edit(EditKind.EMPTY_ROW_OPENED, tag_end - 2, tag_end, b">%b%b" % (body, closing))
+    if scan.ends[index] > tag_end:
+        yield from _edits_among_cells(scan, index, cells)
         return
-    if scan.cells_regular:
-        last = scan.last_letters(index)
-        if not last or column_number(last.decode()) < cells[0][0]:
-            position = _end_of_cells(scan, index)
-            yield Edit(
-                EditKind.CELL_INSERTED, position, position, b"".join(cell for _, cell in cells)
-            )
-            return
-    yield from _edits_among_cells(scan, index, cells)
-
-
-def _end_of_cells(scan: SheetScan, index: int) -> int:
-    """Return where the last cell of a row ends; what may follow it is an extension list."""
-    content_end = scan.content_ends[index]
-    last = scan.last_letters(index)
-    if not last:
-        return scan.tag_ends[index]
-    cell = scan.find_cell(index, last)
-    return content_end if cell is None else cell.end
+    closing = b"</%brow>" % (scan.data.prefix.encode() + b":" if scan.data.prefix else b"")
+    body = b"".join(cell for _, cell in cells)
+    yield Edit(EditKind.EMPTY_ROW_OPENED, tag_end - 2, tag_end, b">%b%b" % (body, closing))
 
 
 def _edits_among_cells(
@@ -227,19 +254,36 @@ def _inserted_cells(
     return Edit(EditKind.CELL_INSERTED, position, position, b"".join(cells))
 
 
-def _spans_edit(scan: SheetScan, index: int, first: int, last: int) -> Edit | None:
-    """Return the edit that widens the `spans` hint of a row, None where it covers the columns."""
-    if scan.plain.find(b"spans", scan.starts[index], scan.tag_ends[index]) < 0:
+class _SpansEdits:
+    """Widens the `spans` hint of rows; few different ones occur in a sheet."""
+
+    def __init__(self, scan: SheetScan) -> None:
+        self._scan = scan
+        self._known: dict[tuple[bytes, int, int], bytes | None] = {}
+
+    def edit(self, index: int, first: int, last: int) -> Edit | None:
+        """Return the edit for one row, None where its hint covers the columns or it has none."""
+        scan = self._scan
+        start = scan.plain.find(b' spans="', scan.starts[index], scan.tag_ends[index])
+        if start < 0:
+            where = scan.row_attribute_span(index, b"spans")
+            if where is None:
+                return None
+        else:
+            where = start + 8, scan.plain.index(b'"', start + 8)
+        key = scan.xml[where[0] : where[1]], first, last
+        if key not in self._known:
+            self._known[key] = _widened(*key)
+        new = self._known[key]
+        return None if new is None else Edit(EditKind.ATTRIBUTE_CHANGED, *where, new)
+
+
+def _widened(spans: bytes, first: int, last: int) -> bytes | None:
+    pairs = [(int(low), int(high)) for low, high in re.findall(rb"(\d+):(\d+)", spans)]
+    if not pairs or any(low <= first and last <= high for low, high in pairs):
         return None
-    where = scan.row_attribute_span(index, b"spans")
-    if where is None:
-        return None
-    pairs = re.findall(rb"(\d+):(\d+)", scan.xml[where[0] : where[1]])
-    if not pairs or any(int(low) <= first and last <= int(high) for low, high in pairs):
-        return None
-    low = min(first, *(int(pair[0]) for pair in pairs))
-    high = max(last, *(int(pair[1]) for pair in pairs))
-    return Edit(EditKind.ATTRIBUTE_CHANGED, *where, b"%d:%d" % (low, high))
+    low, high = min(first, *(one for one, _ in pairs)), max(last, *(one for _, one in pairs))
+    return b"%d:%d" % (low, high)
 
 
 def _dimension_edits(scan: SheetScan, new: list[NewCells]) -> list[Edit]:

@@ -5,7 +5,7 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 
-from workbook_tools.cell_address import Range, column_letters, column_number, parse_range
+from workbook_tools.cell_address import Range, column_letters, parse_range
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import Heading, lacks_unit, read_heading
 from workbook_tools.parts import Sheet
@@ -120,16 +120,9 @@ class SheetReading:
 
     def last_used_column(self, indices: Iterable[int]) -> int:
         """Return the last column that holds something in rows of the scan, 0 for none."""
-        if not self.scan.cells_regular:
-            return max((self._last_filled(index) for index in indices), default=0)
-        numbers: dict[bytes, int] = {b"": 0}
         last = 0
         for index in indices:
-            letters = self.scan.last_letters(index)
-            number = numbers.get(letters)
-            if number is None:
-                number = numbers[letters] = column_number(letters.decode())
-            if number > last:
+            if self.scan.last_columns[index] > last:
                 last = max(last, self._last_filled(index))
         return last
 

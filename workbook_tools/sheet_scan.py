@@ -7,6 +7,7 @@ and comments and the like are blanked out first (in a copy of equal length).
 
 from __future__ import annotations
 
+import functools
 import re
 from array import array
 from bisect import bisect_left, bisect_right
@@ -91,6 +92,7 @@ class SheetScan:
         )
         self.formula_tag = re.compile(b"<" + prefix + rb"f(?=[\s/>])" + _ATTRIBUTES + b">")
         self._opening = b"<" + prefix + b'c r="'
+        self._closing = b"</" + prefix + b"c>"
         self._start = re.compile(re.escape(self._opening) + rb"([A-Z]+)")
         self._find_rows()
         self.cells_regular = self.rows_explicit and self._cells_are_regular()
@@ -161,33 +163,58 @@ class SheetScan:
             True,
         )
 
-    def cell_starts(self, index: int) -> Iterator[tuple[bytes, int]]:
-        """Yield column letters and offset of each cell of the row; for regular cells only."""
-        for match in self._start.finditer(
-            self.plain, self.tag_ends[index], self.content_ends[index]
-        ):
-            yield match[1], match.start()
+    @functools.cached_property
+    def last_columns(self) -> array[int]:
+        """The column of each row's last cell element, 0 for a row without cells."""
+        last = array("q")
+        numbers = {b"": 0}
+        for index in range(len(self)):
+            if not self.cells_regular:
+                last.append(max((cell.column for cell in self.cells(index)), default=0))
+                continue
+            letters = self._last_letters(index)
+            number = numbers.get(letters)
+            if number is None:
+                number = numbers[letters] = column_number(letters.decode())
+            last.append(number)
+        return last
 
-    def last_letters(self, index: int) -> bytes:
-        """Return the column letters of the row's last cell, b"" for none; regular cells only."""
-        start = self.plain.rfind(self._opening, self.tag_ends[index], self.content_ends[index])
-        if start < 0:
-            return b""
-        match = self._start.match(self.plain, start)
-        if match is None or not self.plain.startswith(b'%d"' % self.numbers[index], match.end()):
-            raise self._disordered(f"row {self.numbers[index]}")
-        return match[1]
+    def end_of_cells(self, index: int) -> int:
+        """Return where the last cell of a row ends; what may follow it is an extension list."""
+        end = self.content_ends[index]
+        if self.plain.startswith(self._closing, end - len(self._closing)):
+            return end
+        cells = self.cells(index)
+        return cells[-1].end if cells else self.tag_ends[index]
+
+    def plain_numbers(self, letters: bytes) -> Iterator[tuple[int, int, int, float | None]]:
+        """Yield row, offset, style and number of each cell of a column; for regular cells only.
+
+        The number is None where the cell holds anything but a plain number.
+        """
+        pattern = re.compile(
+            re.escape(self._opening + letters)
+            + rb'(\d+)"(?:(?: s="(\d+)")?(?: t="n")?><'
+            + self._prefix
+            + rb"v>(-?\d+(?:\.\d+)?(?:[eE][-+]?\d+)?)</"
+            + self._prefix
+            + b"v>"
+            + re.escape(self._closing)
+            + b")?"
+        )
+        data = self.data
+        for match in pattern.finditer(self.plain, data.start_tag_end, data.end_tag_start):
+            row, style, number = match.groups()
+            yield (
+                int(row),
+                match.start(),
+                0 if style is None else int(style),
+                None if number is None else float(number),
+            )
 
     def rows_between(self, first: int, last: int) -> range:
         """Return the indices of the row elements with numbers from `first` to `last`."""
         return range(bisect_left(self.numbers, first), bisect_right(self.numbers, last))
-
-    def reaches(self, index: int, column: int) -> bool:
-        """Tell whether the row may have a cell in that column or right of it."""
-        if not self.cells_regular:
-            return True
-        last = self.last_letters(index)
-        return bool(last) and column_number(last.decode()) >= column
 
     def is_empty(self, cell: CellSpan) -> bool:
         """Tell whether a cell element holds nothing: no value, no formula, no text."""
@@ -229,6 +256,15 @@ class SheetScan:
             if match[1] == name:
                 return match.span(2) if match[2] is not None else match.span(3)
         return None
+
+    def _last_letters(self, index: int) -> bytes:
+        start = self.plain.rfind(self._opening, self.tag_ends[index], self.content_ends[index])
+        if start < 0:
+            return b""
+        match = self._start.match(self.plain, start)
+        if match is None or not self.plain.startswith(b'%d"' % self.numbers[index], match.end()):
+            raise self._disordered(f"row {self.numbers[index]}")
+        return match[1]
 
     def _find_data(self) -> None:
         opening = _SHEET_DATA.search(self.xml)

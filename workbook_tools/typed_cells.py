@@ -25,6 +25,8 @@ _SUMMARY = re.compile(
     re.IGNORECASE,
 )
 
+_DATE = "a date, not a number; what was typed is lost"
+
 TextOf = Callable[[int], str]
 
 
@@ -80,12 +82,8 @@ def read_columns(
     """
     readers = {column: _ColumnReader(scan, column, indices, text_of, is_date) for column in columns}
     if scan.cells_regular:
-        for column, reader in readers.items():
-            letters = column_letters(column).encode()
-            for position, index in enumerate(indices):
-                cell = scan.find_cell(index, letters)
-                if cell is not None:
-                    reader.take(position, cell)
+        for reader in readers.values():
+            reader.take_all()
     else:
         for position, index in enumerate(indices):
             for cell in scan.cells(index):
@@ -132,6 +130,32 @@ class _ColumnReader:
             array("q", [-1]) * count,
         )
 
+    def take_all(self) -> None:
+        """Sort every cell of the column, plain numbers without a closer look."""
+        cells, scan = self.cells, self.scan
+        letters = column_letters(cells.column).encode()
+        index, stop = cells.indices.start, cells.indices.stop
+        kinds, numbers, styles, rows = cells.kinds, cells.numbers, cells.styles, scan.numbers
+        first = rows[index] if index < stop else 0
+        for row, start, style, number in scan.plain_numbers(letters):
+            if row < first:
+                continue
+            while index < stop and rows[index] < row:
+                index += 1
+            if index >= stop:
+                break
+            position = index - cells.indices.start
+            if number is None or rows[index] != row or start > scan.ends[index]:
+                cell = scan.find_cell(index, letters) if rows[index] == row else None
+                if cell is not None:
+                    self.take(position, cell)
+            elif self._shows_dates(style):
+                self._leave(position, style, _DATE, str(number))
+            else:
+                kinds[position] = NUMBER
+                numbers[position] = number
+                styles[position] = style
+
     def take(self, position: int, cell: CellSpan) -> None:
         """Sort one cell."""
         cells = self.cells
@@ -143,14 +167,20 @@ class _ColumnReader:
         formula = self.scan.formula(cell)
         found = self._number_or_reason(cell, formula)
         if isinstance(found, str):
-            cells.kinds[position] = LEFT
-            cells.reasons[position] = found
-            cells.texts[position] = shown_text(self.scan, cell, self.text_of)
+            text = shown_text(self.scan, cell, self.text_of)
+            self._leave(position, cell.style, found, text)
             return
         cells.kinds[position] = NUMBER
         cells.numbers[position] = found
         cells.from_text += cell.type in ("s", "inlineStr", "str")
         cells.from_formulas += formula is not None
+
+    def _leave(self, position: int, style: int, reason: str, text: str) -> None:
+        cells = self.cells
+        cells.kinds[position] = LEFT
+        cells.styles[position] = style
+        cells.reasons[position] = reason
+        cells.texts[position] = text
 
     def _number_or_reason(self, cell: CellSpan, formula: str | None) -> float | str:
         if formula is not None and _SUMMARY.search(formula):
@@ -163,7 +193,7 @@ class _ColumnReader:
         if cell.type == "e":
             return f"a formula error: {text}"
         if cell.type == "d" or (cell.type == "n" and self._shows_dates(cell.style)):
-            return "a date, not a number; what was typed is lost"
+            return _DATE
         number = plain_number(text)
         if number is None or not math.isfinite(number):
             return f"not read: {_shortened(text)}"

@@ -108,8 +108,6 @@ def _entries(data: bytes, end: _End, label: str) -> list[_Entry]:
         name_bytes = data[position + CENTRAL.size : extra_from]
         extra = data[extra_from:comment_from]
         position = comment_from + comment_size
-        if position > end.position:
-            break
         if _FULL_32 in (compressed_size, size, local_offset) or _has_zip64(extra):
             raise _zip64(label)
         if disk:
