@@ -3,16 +3,15 @@
 from __future__ import annotations
 
 import io
-import os
 import zipfile
 from collections.abc import Iterator
-from pathlib import Path
 
 import openpyxl
 import pytest
 import xlsxwriter
 from openpyxl.formula.tokenizer import Token, Tokenizer
 
+from tests.workbook_tools.corpus import corpus_paths, needs_corpus
 from tests.workbook_tools.loose_parts import LooseParts
 from workbook_tools.archive import Archive
 from workbook_tools.cell_address import Range, parse_range
@@ -140,13 +139,11 @@ def test_a_drawing_without_its_charts_is_passed_over() -> None:
 
 
 @pytest.mark.long
+@needs_corpus
 @pytest.mark.filterwarnings("ignore")  # openpyxl warns of all that it would drop
 def test_every_direct_reader_that_openpyxl_sees_in_the_corpus_is_named() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     named = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
+    for path in corpus_paths():
         try:
             archive = Archive.open(path)
             workbook = read_workbook(archive)

@@ -2,14 +2,12 @@
 
 from __future__ import annotations
 
-import os
 import re
-import zipfile
-from pathlib import Path
 
 import pytest
 from openpyxl.formula.tokenizer import Token, Tokenizer
 
+from tests.workbook_tools.corpus import corpus_parts, needs_corpus
 from workbook_tools.cell_address import Range, parse_range
 from workbook_tools.formula_references import NameUse, References, TableUse, references
 from workbook_tools.sheet_formulas import formulas_of
@@ -131,21 +129,13 @@ def test_what_could_read_more_or_is_not_understood_is_uncertain(formula: str) ->
 
 
 @pytest.mark.long
+@needs_corpus
 def test_no_reference_that_openpyxl_sees_in_the_corpus_is_missed() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     seen = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
-        if not zipfile.is_zipfile(path):
+    for _, xml in corpus_parts(".xml"):
+        if b"<sheetData" not in xml:
             continue
-        with zipfile.ZipFile(path) as archive:
-            sheets = [
-                archive.read(entry)
-                for entry in archive.infolist()
-                if re.search(r"worksheets/[^/]+\.xml$", entry.filename) and not entry.flag_bits & 1
-            ]
-        for formula in {formula.text for xml in sheets for formula in formulas_of(xml)}:
+        for formula in {formula.text for formula in formulas_of(xml)}:
             found = references(formula)
             if found.uncertain:
                 continue

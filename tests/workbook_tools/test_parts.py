@@ -2,12 +2,12 @@
 
 from __future__ import annotations
 
-import os
 from pathlib import Path
 
 import openpyxl
 import pytest
 
+from tests.workbook_tools.corpus import corpus_paths, needs_corpus
 from tests.workbook_tools.loose_parts import (
     DOCUMENT,
     MAIN,
@@ -312,13 +312,11 @@ def test_a_style_sheet_is_added_with_its_relation_and_content_type(strict: bool)
 
 
 @pytest.mark.long
+@needs_corpus
 @pytest.mark.filterwarnings("ignore")  # openpyxl warns of all that it would drop
 def test_the_corpus_is_mapped_as_openpyxl_maps_it() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     read_by_us = agreeing = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
+    for path in corpus_paths():
         try:
             archive = Archive.open(path)
             found = read_workbook(archive)

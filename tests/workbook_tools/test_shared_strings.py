@@ -3,15 +3,13 @@
 from __future__ import annotations
 
 import io
-import os
 import random
-import zipfile
-from pathlib import Path
 from xml.etree import ElementTree
 
 import pytest
 from openpyxl.reader.strings import read_string_table
 
+from tests.workbook_tools.corpus import corpus_parts, needs_corpus
 from tests.workbook_tools.loose_parts import MAIN
 from workbook_tools.errors import Refusal
 from workbook_tools.hex_escapes import decoded
@@ -160,24 +158,16 @@ def test_random_lists_agree_with_the_standard_library() -> None:
 
 
 @pytest.mark.long
+@needs_corpus
 def test_the_texts_of_the_corpus_are_those_that_openpyxl_reads() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     seen = rich = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
-        if not zipfile.is_zipfile(path):
-            continue
-        with zipfile.ZipFile(path) as archive:
-            names = [n for n in archive.namelist() if n.lower().endswith("sharedstrings.xml")]
-            parts = [archive.read(name) for name in names]
-        for xml in parts:
-            found = SharedStrings(xml, path.name)
-            ours = [found[n] for n in range(len(found))]
-            rich += sum(text.rich for text in ours)
-            seen += len(ours)
-            if b"purl.oclc.org" not in xml:  # openpyxl 3.1 reads no strict texts
-                theirs = read_string_table(io.BytesIO(xml))
-                assert [text.text for text in ours] == [decoded(text) for text in theirs]
+    for file, xml in corpus_parts("sharedstrings.xml"):
+        found = SharedStrings(xml, file)
+        ours = [found[n] for n in range(len(found))]
+        rich += sum(text.rich for text in ours)
+        seen += len(ours)
+        if b"purl.oclc.org" not in xml:  # openpyxl 3.1 reads no strict texts
+            theirs = read_string_table(io.BytesIO(xml))
+            assert [text.text for text in ours] == [decoded(text) for text in theirs]
     assert seen > 1000
     assert rich > 0

@@ -2,13 +2,11 @@
 
 from __future__ import annotations
 
-import os
-from pathlib import Path
-
 import openpyxl
 import pytest
 from openpyxl.worksheet.formula import ArrayFormula, DataTableFormula
 
+from tests.workbook_tools.corpus import corpus_paths, needs_corpus
 from tests.workbook_tools.loose_parts import MAIN
 from workbook_tools.archive import Archive
 from workbook_tools.parts import SheetKind, read_workbook
@@ -128,13 +126,11 @@ def test_a_sheet_in_utf16_is_read_too() -> None:
 
 
 @pytest.mark.long
+@needs_corpus
 @pytest.mark.filterwarnings("ignore")  # openpyxl warns of all that it would drop
 def test_the_formula_cells_of_the_corpus_are_those_that_openpyxl_finds() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     compared = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
+    for path in corpus_paths():
         try:
             archive = Archive.open(path)
             sheets = read_workbook(archive).sheets

@@ -3,14 +3,13 @@
 from __future__ import annotations
 
 import io
-import os
 import zipfile
-from pathlib import Path
 
 import openpyxl
 import pytest
 import xlsxwriter
 
+from tests.workbook_tools.corpus import corpus_parts, needs_corpus
 from tests.workbook_tools.loose_parts import MAIN, STRICT_MAIN, applied
 from tests.workbook_tools.schema_check import needs_schemas, schema_problems
 from workbook_tools.errors import Refusal
@@ -367,27 +366,19 @@ def test_the_blank_sheet_and_what_is_appended_to_it_are_valid(strict: bool) -> N
 
 
 @pytest.mark.long
+@needs_corpus
 @needs_schemas
 def test_every_style_of_the_corpus_can_be_a_model_and_the_part_stays_valid() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     seen = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
-        if not zipfile.is_zipfile(path):
-            continue
-        with zipfile.ZipFile(path) as archive:
-            names = [name for name in archive.namelist() if name.endswith("/styles.xml")]
-            parts = [archive.read(name) for name in names]
-        for xml in parts:
-            sheet = StyleSheet(xml, path.name)
-            before = [sheet.format_code(style) for style in range(len(sheet))]
-            new = [sheet.with_format(style, CODE) for style in range(len(before))]
-            after = applied(xml, sheet.edits())
-            again = StyleSheet(after, path.name)
-            assert [again.format_code(style) for style in range(len(before))] == before
-            assert {again.format_code(style) for style in new} == {CODE}
-            assert len(again) == len(sheet)
-            assert schema_problems(after) == schema_problems(xml)
-            seen += 1
+    for file, xml in corpus_parts("/styles.xml"):
+        sheet = StyleSheet(xml, file)
+        before = [sheet.format_code(style) for style in range(len(sheet))]
+        new = [sheet.with_format(style, CODE) for style in range(len(before))]
+        after = applied(xml, sheet.edits())
+        again = StyleSheet(after, file)
+        assert [again.format_code(style) for style in range(len(before))] == before
+        assert {again.format_code(style) for style in new} == {CODE}
+        assert len(again) == len(sheet)
+        assert schema_problems(after) == schema_problems(xml)
+        seen += 1
     assert seen > 50

@@ -3,15 +3,14 @@
 from __future__ import annotations
 
 import io
-import os
 import zipfile
-from pathlib import Path
 
 import openpyxl
 import pytest
 import xlsxwriter
 from openpyxl.worksheet.table import Table as OpenpyxlTable
 
+from tests.workbook_tools.corpus import corpus_parts, needs_corpus
 from tests.workbook_tools.loose_parts import MAIN, applied
 from tests.workbook_tools.schema_check import needs_schemas, schema_problems
 from workbook_tools.cell_address import parse_range
@@ -234,27 +233,20 @@ def test_openpyxl_sees_the_grown_table() -> None:
 
 
 @pytest.mark.long
+@needs_corpus
 @needs_schemas
 def test_the_tables_of_the_corpus_grow_and_stay_valid() -> None:
-    folder = os.environ.get("EPOCHBOOK_CORPUS")
-    if not folder:
-        pytest.skip("EPOCHBOOK_CORPUS names no folder of workbooks")
     grown = fixed = 0
-    for path in sorted(Path(folder).glob("*/*.xls*")):
-        if not zipfile.is_zipfile(path):
-            continue
-        with zipfile.ZipFile(path) as archive:
-            names = [n for n in archive.namelist() if n.startswith("xl/tables/table")]
-            parts = [archive.read(name) for name in names if b"<table " in archive.read(name)]
-        for xml in parts:
-            found = read_table(xml, path.name)
+    for file, xml in corpus_parts(".xml"):
+        if b"<table " in xml[:300]:
+            found = read_table(xml, file)
             if not found.growable:
                 fixed += 1
                 assert "query" in found.reason or "XML" in found.reason
                 continue
             grown += 1
-            after = applied(xml, grow(xml, path.name, free_names(["Age", "z"], found.columns)))
-            again = read_table(after, path.name)
+            after = applied(xml, grow(xml, file, free_names(["Age", "z"], found.columns)))
+            again = read_table(after, file)
             assert again.ref.width == len(again.columns) == found.ref.width + 2
             assert schema_problems(after) == schema_problems(xml)
     assert (grown > 0, fixed > 0) == (True, True)
