@@ -3,13 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from itertools import pairwise
 
 from tests.workbook_tools.tag_differences import Difference, NotPermittedError
 from tests.workbook_tools.xml_nodes import Node
 from workbook_tools.splice import EditKind
 
 _MAY_CHANGE = {"width", "customWidth", "bestFit"}
+_OFF = {("hidden", "0"), ("hidden", "false")}  # the same as no attribute
 Attributes = dict[str, str]
 
 
@@ -23,18 +23,15 @@ def column_differences(old: Node, new: Node) -> Iterator[Difference]:
         raise NotPermittedError("text between column elements changed")
     kept = {node.raw for node in new.elements}
     split = [node for node in old.elements if node.raw not in kept]
-    changed, added = [], []
-    for first, last in _steps(old, new):
-        before, after = _at(old, first), _at(new, first)
-        if before == after:
-            continue
-        columns = range(first, last + 1)
-        if before is None:
-            added += columns
-        elif after is None or {k for k, _ in before.items() ^ after.items()} - _MAY_CHANGE:
-            raise NotPermittedError(f"columns {first} to {last}: {before} became {after}")
-        else:
-            changed += columns
+    before, after = _by_column(old), _by_column(new)
+    if set(before) - set(after):
+        raise NotPermittedError(f"columns {sorted(set(before) - set(after))} lost their element")
+    added = sorted(set(after) - set(before))
+    changed = [column for column in before if before[column] != after[column]]
+    for column in changed:
+        if {key for key, _ in before[column].items() ^ after[column].items()} - _MAY_CHANGE:
+            what = f"column {column}: {before[column]} became {after[column]}"
+            raise NotPermittedError(what)
     for node in split:
         place = f"{node.get('min')} to {node.get('max')}"
         yield Difference(EditKind.COLUMN_WIDTH_SPLIT, place, columns=tuple(changed))
@@ -54,19 +51,11 @@ def introduced_columns(new: Node) -> tuple[int, ...]:
     )
 
 
-def _steps(old: Node, new: Node) -> Iterator[tuple[int, int]]:
-    """Runs of columns in which neither version changes."""
-    starts = {1, 16_385}
-    for node in (*old.named("col"), *new.named("col")):
-        starts |= {int(node.get("min")), int(node.get("max")) + 1}
-    ordered = sorted(starts)
-    for first, following in pairwise(ordered):
-        yield first, following - 1
-
-
-def _at(cols: Node, column: int) -> Attributes | None:
+def _by_column(cols: Node) -> dict[int, Attributes]:
+    """Attributes of every column that has an element, without the range and what is off."""
+    found = {}
     for node in cols.named("col"):
-        attributes = dict(node.attributes)
-        if int(attributes.pop("min")) <= column <= int(attributes.pop("max")):
-            return attributes
-    return None
+        attributes = {k: v for k, v in node.attributes if (k, v) not in _OFF}
+        columns = range(int(attributes.pop("min")), int(attributes.pop("max")) + 1)
+        found.update(dict.fromkeys(columns, attributes))
+    return found

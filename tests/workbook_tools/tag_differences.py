@@ -39,7 +39,7 @@ def tag_differences(old: Node, new: Node, parent: str) -> Iterator[Difference]:
     if old.closes_itself and not new.closes_itself:
         if old.name not in _OPENED:
             raise NotPermittedError(f"{old.tag!r} was opened")
-        old_tag = re.sub(rb"\s*/>$", b">", old_tag)
+        old_tag = old_tag[:-2] + b">"
         if old.name == "row":
             yield Difference(EditKind.EMPTY_ROW_OPENED, old.get("r"))
     elif new.closes_itself and not old.closes_itself:
@@ -83,9 +83,11 @@ Rule = Callable[[Node, Node, str, str], bool]
 
 
 def _covers(old: Node, new: Node, before: str, after: str) -> bool:
-    """Dimension or range of cells that holds the old one."""
+    """An extent that holds the old one, which is A1 also where a sheet holds nothing."""
     inner, outer = box(before), box(after)
-    return bool(inner and outer and outer.holds(inner.top, inner.left) and outer.holds(*inner[2:]))
+    return before == "A1" or bool(
+        inner and outer and outer.holds(inner.top, inner.left) and outer.holds(*inner[2:])
+    )
 
 
 def _covers_span(old: Node, new: Node, before: str, after: str) -> bool:

@@ -9,6 +9,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 from dataclasses import dataclass, field
+from functools import cached_property
 
 from tests.workbook_tools.rules.sheet_view import position
 
@@ -35,12 +36,12 @@ class Node:
     place: tuple[int, int] = (0, 0)
     end_tag: bytes = b""
 
-    @property
+    @cached_property
     def prefix(self) -> str:
         """Namespace prefix of the element as written."""
         return _qualified(self.tag).rpartition(":")[0]
 
-    @property
+    @cached_property
     def name(self) -> str:
         """Name of the element without prefix; '' for text."""
         return _qualified(self.tag).rpartition(":")[2] if self.tag else ""
