@@ -115,15 +115,19 @@ class Archive:
             KeyError: there is no such member.
             Refusal: the member does not inflate to the size and CRC that the directory states.
         """
-        member = self._by_name[name.lower()]
-        packed = self._packed(member)
-        try:
-            content = bytes(packed) if member.method == STORED else _inflated(packed, member.size)
-        except zlib.error as error:
-            raise damaged(self.label, f"{member.name} cannot be unpacked") from error
-        if len(content) != member.size or zlib.crc32(content) != member.crc:
-            raise damaged(self.label, f"{member.name} does not match its checksum")
-        return content
+        content = BytesIO()
+        for block in self._unpacked(name):
+            content.write(block)
+        return content.getvalue()
+
+    def check(self, name: str) -> None:
+        """Unpack a member as `read` does, without keeping it.
+
+        Raises:
+            KeyError, Refusal: as `read`.
+        """
+        for _ in self._unpacked(name):
+            pass
 
     def rewrite(
         self,
@@ -166,6 +170,22 @@ class Archive:
         sink.write(entries)
         sink.write(end_record(len(directory), len(entries), offset, self._comment))
         self._refuse_large(sink)
+
+    def _unpacked(self, name: str) -> Iterator[bytes | memoryview]:
+        """Yield a member in blocks, and raise at the end where it is not what it should be."""
+        member = self._by_name[name.lower()]
+        packed = self._packed(member)
+        size = crc = 0
+        blocks = [packed] if member.method == STORED else _inflated(packed, member.size)
+        try:
+            for block in blocks:
+                size += len(block)
+                crc = zlib.crc32(block, crc)
+                yield block
+        except zlib.error as error:
+            raise damaged(self.label, f"{member.name} cannot be unpacked") from error
+        if size != member.size or crc != member.crc:
+            raise damaged(self.label, f"{member.name} does not match its checksum")
 
     def _packed(self, member: Member) -> memoryview:
         start = member.data_offset
@@ -223,13 +243,13 @@ def _blocks(pieces: Pieces) -> Iterator[bytes | memoryview]:
     yield b"".join(pending)
 
 
-def _inflated(packed: memoryview, size: int) -> bytes:
+def _inflated(packed: memoryview, size: int) -> Iterator[bytes]:
     """Inflate at most one byte more than `size`, which is enough to see that a size is false."""
     unpacker = zlib.decompressobj(_RAW)
-    content = BytesIO()
+    found = 0
     for start in range(0, len(packed), _BLOCK):
-        room = size + 1 - content.tell()
-        content.write(unpacker.decompress(packed[start : start + _BLOCK], room))
-        if content.tell() > size or unpacker.eof:
+        block = unpacker.decompress(packed[start : start + _BLOCK], size + 1 - found)
+        found += len(block)
+        yield block
+        if found > size or unpacker.eof:
             break
-    return content.getvalue()

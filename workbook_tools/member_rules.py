@@ -43,12 +43,12 @@ def refuse_members(members: Sequence[Member], label: str) -> None:
 def _refuse_names(names: Sequence[str], label: str) -> None:
     seen: set[str] = set()
     for name in names:
+        if not name or not name.isprintable() or name.startswith("/") or ".." in name.split("/"):
+            raise to_save_again(label, f"has a part whose name is not allowed ({name!r})")
         if "\\" in name:
             raise to_save_again(
                 label, f"has a part whose name is spelled with backslashes ({name})"
             )
-        if not name or "\0" in name or name.startswith("/") or ".." in name.split("/"):
-            raise to_save_again(label, f"has a part whose name is not allowed ({name!r})")
         # Readers disagree on which of two counts; part names are equal regardless of case.
         if name.lower() in seen:
             raise to_save_again(label, f"has two parts of the same name ({name})")

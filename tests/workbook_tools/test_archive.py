@@ -13,7 +13,7 @@ from io import BytesIO
 from pathlib import Path
 
 import pytest
-from hypothesis import given
+from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from workbook_tools import archive as archive_module
@@ -184,6 +184,7 @@ def test_calls_that_would_make_a_wrong_file_are_bugs() -> None:
         archive.rewrite(BytesIO(), {}, {SHEET.upper(): [b""]})
 
 
+@settings(deadline=None)
 @given(
     old=st.lists(st.binary(max_size=300), min_size=1, max_size=5),
     new=st.dictionaries(st.integers(0, 4), st.lists(st.binary(max_size=200), max_size=9)),
@@ -274,6 +275,26 @@ def test_a_deflate_stream_cut_short_is_refused() -> None:
         Archive.from_bytes(bytes(data), "log.xlsx").read(SHEET)
 
 
+@settings(deadline=None)
+@given(
+    changes=st.dictionaries(st.integers(-900, -1), st.integers(0, 255), max_size=3),
+    cut=st.integers(0, 100),
+)
+def test_any_damage_ends_in_a_refusal_or_in_a_sound_copy(changes: dict[int, int], cut: int) -> None:
+    """No other error ever reaches the user; the directory lies in the last 900 bytes."""
+    data = bytearray(workbook_bytes())
+    for at, value in changes.items():
+        data[at] = value
+    del data[len(data) - cut :]
+    try:
+        archive = Archive.from_bytes(bytes(data), "log.xlsx")
+        content = [archive.read(name) for name in archive.names()]
+    except Refusal:
+        return
+    again = Archive.from_bytes(rewritten(archive), "log.xlsx")
+    assert [again.read(name) for name in again.names()] == content
+
+
 def test_foreign_packages_are_refused() -> None:
     sink = BytesIO()
     with zipfile.ZipFile(sink, "w") as writer:
@@ -316,6 +337,16 @@ def test_a_result_over_the_limit_is_refused(monkeypatch: pytest.MonkeyPatch) -> 
     monkeypatch.setattr(archive_module, "MAX_FILE", len(data) + 1000)
     with pytest.raises(Refusal, match="more than 2 GB"):
         archive.rewrite(BytesIO(), {"xl/media/image1.png": [bytes(2000)]})
+
+
+def test_the_directory_counts_towards_the_limit(monkeypatch: pytest.MonkeyPatch) -> None:
+    archive = Archive.from_bytes(rewritten(Archive.from_bytes(workbook_bytes(), "")), "log.xlsx")
+    size = len(rewritten(archive))
+    monkeypatch.setattr(archive_module, "MAX_FILE", size)
+    assert len(rewritten(archive)) == size
+    monkeypatch.setattr(archive_module, "MAX_FILE", size - 1)
+    with pytest.raises(Refusal, match="more than 2 GB"):
+        rewritten(archive)
 
 
 def test_a_member_over_the_limit_is_refused(monkeypatch: pytest.MonkeyPatch) -> None:

@@ -28,6 +28,7 @@ def test_ordinary_members_and_folders_pass() -> None:
         ("../workbook.xml", "not allowed"),
         ("xl/../../workbook.xml", "not allowed"),
         ("xl/work\0book.xml", "not allowed"),
+        ("xl/\x1b[2Jbook.xml", "not allowed"),
         ("", "not allowed"),
     ],
 )

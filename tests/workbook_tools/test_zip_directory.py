@@ -130,6 +130,19 @@ def entry_beyond_directory(data: bytearray) -> None:
     put(data, data.rindex(b"PK\x01\x02") + 32, "H", 60000)
 
 
+def entry_cut_short(data: bytearray) -> None:
+    at = end_of(data)
+    size = struct.unpack_from("<L", data, at + 12)[0]
+    put(data, at + 8, "2HL", 3, 3, size + 4)
+    data[at:at] = b"PK\x01\x02"
+
+
+def local_header_cut_short(data: bytearray) -> None:
+    put(data, end_of(data) + 20, "H", 4)
+    put(data, entry_of(data) + 42, "L", len(data))
+    data += b"PK\x03\x04"
+
+
 def no_local_signature(data: bytearray) -> None:
     data[0] = 0
 
@@ -192,6 +205,8 @@ def name_not_utf8(data: bytearray) -> None:
         (one_entry_too_many, "does not hold what its last record counts"),
         (no_entry_signature, "does not hold what its last record counts"),
         (entry_beyond_directory, "does not hold what its last record counts"),
+        (entry_cut_short, "does not hold what its last record counts"),
+        (local_header_cut_short, "not where the zip directory says"),
         (no_local_signature, "not where the zip directory says"),
         (local_offset_beyond_file, "not where the zip directory says"),
         (local_crc_differs, "disagree"),
@@ -253,6 +268,21 @@ def test_zip64_forced_by_the_writer_is_refused() -> None:
         part.write(b"<workbook/>")
     with pytest.raises(Refusal, match="64-bit sizes"):
         read_directory(sink.getvalue(), "log.xlsx")
+
+
+@pytest.mark.parametrize("header", ["local", "directory"])
+def test_a_zip64_extra_field_in_either_header_is_refused(header: str) -> None:
+    sink = BytesIO()
+    with zipfile.ZipFile(sink, "w") as archive:
+        info = zipfile.ZipInfo("xl/workbook.xml")
+        info.extra = struct.pack("<2HL", 0x5455, 4, 0) + struct.pack("<2HQ", 0x7FFF, 8, 11)
+        archive.writestr(info, b"<workbook/>")
+    data = bytearray(sink.getvalue())
+    read_directory(bytes(data), "log.xlsx")
+    field = struct.pack("<2H", 0x7FFF, 8)
+    put(data, data.index(field) if header == "local" else data.rindex(field), "H", 1)
+    with pytest.raises(Refusal, match="64-bit sizes"):
+        read_directory(bytes(data), "log.xlsx")
 
 
 @pytest.mark.parametrize("where", ["end disk", "directory disk", "count here", "entry disk"])
