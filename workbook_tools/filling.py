@@ -32,6 +32,7 @@ class FillResult:
     Attributes:
         path: the workbook that holds the result; the one that was read where nothing changed.
         kept: the dated copy of the old workbook, None where it was not replaced.
+        written: whether a file was written.
         history: under which values were converted.
         plans: one for each sheet that was filled.
         dependents: formulas, names and charts that were there before and read filled cells, by
@@ -42,6 +43,7 @@ class FillResult:
 
     path: Path
     kept: Path | None
+    written: bool
     history: ExpansionHistory
     plans: list[SheetPlan]
     dependents: dict[str, Dependents] = field(default_factory=dict)
@@ -205,6 +207,7 @@ class _Task:
         result = FillResult(
             self.placement.destination if not self.placement.in_place else self.placement.source,
             None,
+            False,
             history,
             plans,
             warnings=[*self.workbook.map.warnings, *notes],
@@ -227,7 +230,7 @@ class _Task:
         replaced = put_in_place(
             self.placement, write, verify=lambda p: self._verify(p, list(changes)), now=self.now
         )
-        result.path, result.kept = replaced.path, replaced.kept
+        result.path, result.kept, result.written = replaced.path, replaced.kept, True
         result.warnings += replaced.warnings
         return result
 
@@ -262,7 +265,7 @@ class _Task:
                 f"the result of {self.workbook.label} lacks parts after writing; check the disk"
             )
         for name in changed:
-            written.read(name)
+            written.check(name)
 
 
 def _counted(

@@ -89,8 +89,8 @@ def lacks_unit(text: str) -> Measure | None:
 
 
 def same_heading(first: str, second: str) -> bool:
-    """Tell whether two headings are the same but for white space."""
-    return " ".join(first.split()) == " ".join(second.split())
+    """Tell whether two headings are the same but for white space and capitals."""
+    return " ".join(first.split()).casefold() == " ".join(second.split()).casefold()
 
 
 def _splits(line: str) -> list[tuple[str, str]]:

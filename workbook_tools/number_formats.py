@@ -6,7 +6,9 @@ import math
 import re
 from collections.abc import Sequence
 
-_FEWEST, _MOST = 4, 6
+import numpy as np
+
+_FEWEST, _MOST = 3, 5
 _FIXED = re.compile(r"(?:#,##)?0(?:\.(0+))?")
 _SCIENTIFIC = re.compile(r"0(?:\.(0+))?E\+0+")
 # All that the General format shows of a number in a cell of ordinary width.
@@ -22,22 +24,23 @@ def significant_digits(value: float) -> int:
 def format_for(values: Sequence[float], source_digits: int) -> str:
     """Return a format that shows values with about the digits of their source.
 
-    At least four significant digits and at most six; powers of ten where fixed decimals would
-    need too much room.
+    The middle one of the values gets three to five significant digits, as its source has, and the
+    smallest at least two; powers of ten where that would need too much room.
 
     Args:
         values: the numbers of a column; finite.
         source_digits: significant digits that its source typically has.
     """
     digits = min(max(source_digits, _FEWEST), _MOST)
-    sizes = sorted(abs(value) for value in values if value)
-    if not sizes:
+    sizes = np.abs(np.asarray(values))
+    sizes = sizes[sizes > 0.0]
+    if not len(sizes):
         return "0." + "0" * (digits - 1)
-    low, typical, high = sizes[0], sizes[len(sizes) // 10], sizes[-1]
-    decimals = digits - 1 - math.floor(math.log10(typical))
-    if high >= 1e9 or low < 1e-5 or decimals > 8:
+    low, middle, high = float(sizes.min()), float(np.median(sizes)), float(sizes.max())
+    decimals = max(digits - 1 - math.floor(math.log10(middle)), 1 - math.floor(math.log10(low)), 0)
+    if high >= 1e9 or decimals > 6:
         return "0." + "0" * (digits - 1) + "E+00"
-    return "0." + "0" * decimals if decimals > 0 else "0"
+    return "0." + "0" * decimals if decimals else "0"
 
 
 def shown_step(value: float, code: str) -> float:

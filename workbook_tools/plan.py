@@ -93,7 +93,7 @@ def plan_sheet(reading: SheetReading, request: Request, styles: StyleSheet | Non
     if source is None:
         return plan
     column, heading = source
-    targets, added = _targets(reading, request, column, heading)
+    targets, added = _targets(plan, request, column, heading)
     if not reading.rows or not (targets or added):
         return plan
     (cells,) = reading.columns([column])
@@ -135,14 +135,19 @@ def _has_blank_target(reading: SheetReading, sources: list[int], request: Reques
 
 
 def _targets(
-    reading: SheetReading, request: Request, source: int, source_heading: Heading
+    plan: SheetPlan, request: Request, source: int, source_heading: Heading
 ) -> tuple[list[tuple[int, Heading]], list[Heading]]:
     """Return the existing columns to fill and the headings of those to append."""
+    reading = plan.reading
     added = []
     asked: dict[int, Heading] = {}
     for text in request.add:
         heading = source_choice.known_heading(text, "--add")
         twin = next((c for c, t in reading.texts.items() if same_heading(t, text)), None)
+        if twin is not None:
+            plan.notes.append(
+                f"{text!r} is there already (column {column_letters(twin)}), so no column is added"
+            )
         if twin is None:
             added.append(heading)
         elif twin != source:
@@ -211,13 +216,16 @@ class _Filler:
             names = free_names(names, table.columns)
             self.plan.grown = (table, names)
         hidden = hidden_columns(self.reading.scan)
+        style = 0
         everywhere = np.ones(len(self.source.kinds), dtype=bool)
         for offset, (heading, name) in enumerate(zip(headings, names, strict=True)):
             column = first + offset
             cells = self._fill(heading, column, everywhere, None)
-            cells.width = float(min(max(len(name) + 3, 10), 40))
             if self.reading.header_row is not None:
-                cells.heading = (self.reading.header_row, name, self._heading_style(first - 1))
+                style = self._heading_style(first - 1)
+                cells.heading = (self.reading.header_row, name, style)
+            wraps = self.styles is not None and self.styles.wraps(style)
+            cells.width = float(min(max(len(name) + 3, 11), 15 if wraps else 40))
             if column in hidden:
                 self.plan.notes.append(
                     f"column {column_letters(column)} was hidden and is shown, as it is new"
@@ -281,36 +289,42 @@ class _Filler:
         values: Sequence[float],
         target: ColumnCells | None,
     ) -> array[int]:
-        """Return the style of each new cell: that of its neighbours, with a fitting format.
-
-        An empty cell keeps its own look; a blank below filled cells takes that of the last of
-        them; in a new column a cell looks like its row's source.
-        """
+        """Return the style of each new cell: that of its neighbours, with a fitting format."""
         if self.styles is None:
             return array("q", bytes(8 * len(positions)))
         code = format_for(values, self.digits)
-        models = np.array(self.source.styles)[positions]
+        models = np.maximum(np.array(self.source.styles)[positions], 0)
+        keeps = np.zeros(len(positions), dtype=bool)
         if target is not None:
-            models = self._own_models(column, positions, target)
-        kinds, places = np.unique(models, return_inverse=True)
-        styles = [self._formatted(int(one), code, keep=target is not None) for one in kinds]
-        return array("q", np.array(styles, dtype=np.int64)[places].tobytes())
+            own, code = self._own_look(column, target, code)
+            own = own[positions]
+            keeps = own > 0
+            models = np.where(keeps, own, models)
+        known: dict[tuple[int, bool], int] = {}
+        for model, keep in set(zip(models.tolist(), keeps.tolist(), strict=True)):
+            named = keep and self._code(model) != GENERAL
+            known[model, keep] = model if named else self.styles.with_format(model, code)
+        pairs = zip(models.tolist(), keeps.tolist(), strict=True)
+        return array("q", [known[pair] for pair in pairs])
 
-    def _own_models(
-        self, column: int, positions: IndexArray, target: ColumnCells
-    ) -> NDArray[np.int64]:
-        """Return the styles after which blanks of an existing column take their look."""
-        own = np.array(target.styles)[positions]
+    def _own_look(
+        self, column: int, target: ColumnCells, code: str
+    ) -> tuple[NDArray[np.int64], str]:
+        """Return the style that an existing column gives each cell (0: none), and its format.
+
+        An empty cell keeps its own style, a blank below filled ones takes that of the last of
+        them, and the style of the whole column comes next. Without any of these a cell will look
+        like its row's source. The format is that of the column's other cells, if they have one.
+        """
+        own = np.maximum(np.array(target.styles), 0)
         typed = np.flatnonzero(np.frombuffer(target.kinds, dtype=np.uint8) == NUMBER)
+        fallback = column_style(self.reading.scan, column)
         if len(typed):
-            return np.where(own > 0, own, target.styles[int(typed[-1])])
-        return np.where(own >= 0, own, column_style(self.reading.scan, column))
-
-    def _formatted(self, model: int, code: str, *, keep: bool) -> int:
-        assert self.styles is not None
-        if keep and self._code(model) != GENERAL:
-            return model
-        return self.styles.with_format(max(model, 0), code)
+            fallback = int(own[typed[-1]])
+        used = [self._code(int(one)) for one in np.unique(own[own > 0])]
+        used += [self._code(fallback)] if fallback else []
+        named = [one for one in used if one != GENERAL]
+        return np.where(own > 0, own, fallback), named[-1] if named else code
 
     def _code(self, style: int) -> str:
         return GENERAL if self.styles is None else self.styles.format_code(max(style, 0))

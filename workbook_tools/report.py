@@ -26,7 +26,7 @@ def text_report(result: FillResult) -> str:
         lines.append(f"under {label_of(result.history)}: {result.history.assumptions}")
     if result.kept is not None:
         lines.append(f"the workbook as it was is kept as {result.kept.name}")
-    if result.filled or result.edit_counts:
+    if result.written:
         lines.append(f"written: {result.path}")
     return "\n".join(lines)
 
@@ -63,6 +63,8 @@ def json_report(result: FillResult) -> dict[str, Any]:
 def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
     lines = [f"sheet {plan.reading.sheet.name!r}"]
     for column in plan.columns:
+        if not column.count:
+            continue
         place = f"{column_letters(column.column)} {column.heading.text!r}"
         origin = f"{column_letters(column.source_column)} {column.source.text!r}"
         new = "new column " if column.added else ""

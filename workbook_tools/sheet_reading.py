@@ -150,7 +150,7 @@ class SheetReading:
             if not texts:
                 raise UsageError(
                     f"row {header_row} of sheet {self.sheet.name!r} holds no headings; name the row"
-                    " in which they stand with --header-row"
+                    " in which they stand with --header-row, and its sheet with --sheet"
                 )
             return index, texts
         best, best_texts, most = None, dict[int, str](), 0

@@ -42,11 +42,11 @@ def named_source(reading: SheetReading, request: Request) -> tuple[int, Heading]
         column = fitting[0]
     heading = meaning or reading.headings.get(column)
     if heading is None:
-        text = reading.texts.get(column, "nothing")
+        text = reading.texts.get(column)
+        headed = "has no heading" if text is None else f"is headed {text!r}"
         raise UsageError(
-            f"column {column_letters(column)} of sheet {reading.sheet.name!r} is headed"
-            f" {text!r}, which is no measure with a unit; say what it holds, as in"
-            " --as redshift or --as 'age [Gyr]'"
+            f"column {column_letters(column)} of sheet {reading.sheet.name!r} {headed}, which is no"
+            " measure with a unit; say what it holds, as in --as redshift or --as 'age [Gyr]'"
         )
     return column, heading
 

@@ -92,6 +92,17 @@ class StyleSheet:
             return True
         return bool(is_date_format(self._code(number)))
 
+    def wraps(self, style: int) -> bool:
+        """Tell whether a style breaks long texts into lines.
+
+        Raises:
+            Refusal: there is no such style.
+        """
+        if style == 0 and len(self) == 0:
+            return False
+        alignment = self._style(style).find("alignment")
+        return alignment is not None and alignment.flag("wrapText")
+
     def with_format(self, style: int, code: str) -> int:
         """Return the style that looks like `style` but has the number format `code`.
 
