@@ -10,14 +10,24 @@ from collections.abc import Callable, Mapping
 
 
 def medians(works: Mapping[str, Callable[[], object]], rounds: int) -> dict[str, float]:
-    """Median seconds of each piece of work; all take turns, so that all see the same machine."""
+    """Median seconds of each piece of work."""
+    return {name: statistics.median(times) for name, times in _in_turns(works, rounds).items()}
+
+
+def least(works: Mapping[str, Callable[[], object]], rounds: int) -> dict[str, float]:
+    """Seconds of the least disturbed round of each: steadier on a machine that others use."""
+    return {name: min(times) for name, times in _in_turns(works, rounds).items()}
+
+
+def _in_turns(works: Mapping[str, Callable[[], object]], rounds: int) -> dict[str, list[float]]:
+    """Seconds of every round of each; all take turns, so that all see the same machine."""
     times: dict[str, list[float]] = {name: [] for name in works}
     for _ in range(rounds):
         for name, work in works.items():
             begun = time.perf_counter()
             work()
             times[name].append(time.perf_counter() - begun)
-    return {name: statistics.median(values) for name, values in times.items()}
+    return times
 
 
 def machine() -> str:
