@@ -144,11 +144,10 @@ class StyleSheet:
         kind = EditKind.NUMBER_FORMAT_APPENDED
         new = b"".join(self._new_formats)
         if self._formats is not None:
+            # added to the old count, since a wrapped format stands there in two spellings
             old = self._formats.attributes.get("count", "")
-            count = (
-                int(old) if old.isdecimal() else sum(1 for _ in self._formats.find_all("numFmt"))
-            )
-            counted = _count_edit(self._formats, count + len(self._new_formats))
+            count = int(old) + len(self._new_formats) if old.isdecimal() else 0
+            counted = _count_edit(self._formats, count) if count else []
             return [*counted, append_child(self._formats, new, kind)]
         name = qualified(self._root.prefix, "numFmts").encode()
         listed = b'<%b count="%d">%b</%b>' % (name, len(self._new_formats), new, name)

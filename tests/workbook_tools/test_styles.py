@@ -101,17 +101,33 @@ def test_built_in_ids_of_the_standard_are_dates_where_it_says_so() -> None:
     assert dates == [*range(14, 23), *range(27, 37), 45, 46, 47, *range(50, 59)]
 
 
+def test_a_style_breaks_lines_only_where_its_alignment_says_so() -> None:
+    inside = ("", "<alignment/>", '<alignment wrapText="1"/>', '<alignment wrapText="0"/>')
+    sheet = StyleSheet(styles("".join(f"<xf>{text}</xf>" for text in inside)), "p")
+    assert [sheet.wraps(style) for style in range(4)] == [False, False, True, False]
+
+
 @pytest.mark.parametrize("style", [-1, 1, 99])
 def test_a_style_that_is_not_there_is_refused(style: int) -> None:
     sheet = StyleSheet(styles(PLAIN), "xl/styles.xml")
-    for ask in (sheet.format_code, sheet.is_date, lambda number: sheet.with_format(number, "0")):
+    for ask in (
+        sheet.format_code,
+        sheet.is_date,
+        sheet.wraps,
+        lambda number: sheet.with_format(number, "0"),
+    ):
         with pytest.raises(Refusal, match=rf"^xl/styles\.xml has no cell format number {style},"):
             ask(style)
 
 
 def test_a_sheet_without_any_list_of_styles_shows_the_plain_one_and_cannot_grow() -> None:
     sheet = StyleSheet(f'<styleSheet xmlns="{MAIN}"/>'.encode(), "p")
-    assert (len(sheet), sheet.format_code(0), sheet.is_date(0)) == (0, "General", False)
+    assert (len(sheet), sheet.format_code(0)) == (0, "General")
+    assert not sheet.is_date(0)
+    assert not sheet.wraps(0)
+    for ask in (sheet.format_code, sheet.is_date, sheet.wraps):
+        with pytest.raises(Refusal, match="no cell format number 1"):
+            ask(1)
     with pytest.raises(Refusal, match="no cell format number 0"):
         sheet.with_format(0, "0.00")
 

@@ -158,6 +158,11 @@ def test_prefixes_and_missing_counts_are_kept() -> None:
     )
 
 
+def test_ids_begin_at_one_where_no_column_has_any() -> None:
+    xml = table('<tableColumns><tableColumn name="z"/></tableColumns>', ref="A1:A3")
+    assert b'<tableColumn id="1" name="Age"/><' in applied(xml, grow(xml, "p", ["Age"]))
+
+
 def test_names_that_look_like_escapes_are_protected() -> None:
     xml = table()
     assert read_table(applied(xml, grow(xml, "p", ["_x0041_"])), "p").columns[-1] == "_x0041_"
