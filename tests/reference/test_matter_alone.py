@@ -179,3 +179,27 @@ def test_ages_of_matter_alone_have_their_pinned_digits() -> None:
         history = dust(matter, curvature=1 - matter)
         found = epochconv.convert(0, "redshift", "age", history=history)
         assert_close(found, expected, relative=1e-11)
+
+
+def test_transverse_distance_turns_over_at_the_equator_of_a_closed_universe() -> None:
+    """Omega 3: the greatest D_M is the radius of curvature, c/H0 / sqrt(2).
+
+    Development angle, 1 - cos(t) = 2 (1 - 1/Omega)/(1+z) at z, and D_M = R sin(t0 - t): the
+    two epochs of one D_M lie as far before as beyond a quarter of the way round.
+    """
+    history = dust(3, curvature=-2)
+    _, length = ruler(70)
+    radius = length / mp.sqrt(2)
+
+    def redshift(angle: mpf) -> float:
+        today = mp.acos(1 - 2 * (1 - mpf(1) / 3))
+        return float(2 * (1 - mpf(1) / 3) / (1 - mp.cos(today - angle)) - 1)
+
+    nearer, farther = redshift(mp.pi / 2 - mpf("0.3")), redshift(mp.pi / 2 + mpf("0.3"))
+    value = float(radius * mp.cos(mpf("0.3")))
+    with pytest.raises(TwoAnswersError) as caught:
+        epochconv.convert(value, "transverse comoving distance", "age", history=history)
+    assert caught.value.redshifts == pytest.approx((nearer, farther), rel=1e-11)
+    with pytest.raises(OutOfRangeError) as beyond:
+        epochconv.convert(2 * value, "transverse comoving distance", "age", history=history)
+    assert beyond.value.high == pytest.approx(float(radius), rel=1e-12)
