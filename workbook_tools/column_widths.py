@@ -5,8 +5,10 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 
+from workbook_tools.cell_address import MAX_COLUMN
 from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.splice import Edit, EditKind
+from workbook_tools.written_values import whole_number
 from workbook_tools.xml_offsets import Element, qualified
 
 _BEFORE_COLUMNS = ("sheetPr", "dimension", "sheetViews", "sheetFormatPr")
@@ -18,7 +20,7 @@ def hidden_columns(scan: SheetScan) -> set[int]:
     for group in scan.outline.find_all("cols"):
         for column in group.find_all("col"):
             if column.flag("hidden"):
-                hidden.update(_reach(column))
+                hidden.update(_reach(column, scan.part))
     return hidden
 
 
@@ -26,8 +28,8 @@ def column_style(scan: SheetScan, column: int) -> int:
     """Return the format that a whole column has, 0 where it has none."""
     for group in scan.outline.find_all("cols"):
         for holder in group.find_all("col"):
-            if column in _reach(holder):
-                return int(holder.attributes.get("style", "0"))
+            if column in _reach(holder, scan.part):
+                return whole_number(holder.attributes.get("style", "0"), scan.part)
     return 0
 
 
@@ -44,27 +46,29 @@ def width_edits(scan: SheetScan, widths: dict[int, float]) -> list[Edit]:
     edits_of_widths: list[Edit] = []
     loose: dict[int, float] = {}
     for column, width in widths.items():
-        holder = next((one for one in columns if column in _reach(one)), None)
+        holder = next((one for one in columns if column in _reach(one, scan.part)), None)
         if holder is None:
             loose[column] = width
     for holder in columns:
-        inside = {column: width for column, width in widths.items() if column in _reach(holder)}
+        reach = _reach(holder, scan.part)
+        inside = {column: width for column, width in widths.items() if column in reach}
         if inside:
-            pieces = b"".join(_split(holder, inside))
+            pieces = b"".join(_split(holder, reach, inside))
             edits_of_widths.append(
                 Edit(EditKind.COLUMN_WIDTH_SPLIT, holder.start, holder.end, pieces)
             )
     return edits_of_widths + _added_widths(scan, groups, columns, loose)
 
 
-def _reach(column: Element) -> range:
-    return range(int(column.attributes["min"]), int(column.attributes["max"]) + 1)
+def _reach(column: Element, part: str) -> range:
+    first, last = (whole_number(column.attributes.get(end, ""), part) for end in ("min", "max"))
+    return range(first, min(last, MAX_COLUMN) + 1)
 
 
-def _split(holder: Element, widths: dict[int, float]) -> Iterator[bytes]:
+def _split(holder: Element, reach: range, widths: dict[int, float]) -> Iterator[bytes]:
     """Yield the elements that replace one: the columns with a width of their own cut out of it."""
     tag = holder.source[holder.start : holder.end]
-    position = _reach(holder).start
+    position = reach.start
     for column in sorted(widths):
         if position < column:
             yield _with(tag, min=str(position), max=str(column - 1))
@@ -78,8 +82,8 @@ def _split(holder: Element, widths: dict[int, float]) -> Iterator[bytes]:
             bestFit=None,
         )
         position = column + 1
-    if position < _reach(holder).stop:
-        yield _with(tag, min=str(position), max=str(_reach(holder).stop - 1))
+    if position < reach.stop:
+        yield _with(tag, min=str(position), max=str(reach.stop - 1))
 
 
 def _with(tag: bytes, **attributes: str | None) -> bytes:
@@ -115,7 +119,7 @@ def _added_widths(
         return [Edit(kind, position, position, f"<{wrapper}>{body}</{wrapper}>".encode())]
     added: dict[int, list[str]] = {}
     for column in sorted(tags):
-        earlier = [one.end for one in columns if _reach(one).start < column]
+        earlier = [one.end for one in columns if _reach(one, scan.part).start < column]
         place = max(earlier) if earlier else columns[0].start
         added.setdefault(place, []).append(tags[column])
     return [Edit(kind, place, place, "".join(body).encode()) for place, body in added.items()]

@@ -224,7 +224,10 @@ class _Task:
         changes = dict(self._edited_parts(busy, result))
 
         def write(sink: BinaryIO) -> None:
-            pieces = {name: _counted(name, *change, result) for name, change in changes.items()}
+            pieces = {}
+            for name, (xml, edits) in changes.items():
+                counts = result.edit_counts[name] = Counter[EditKind]()
+                pieces[name] = spliced(xml, edits, counts)
             self.workbook.archive.rewrite(sink, pieces)
 
         replaced = put_in_place(
@@ -266,18 +269,3 @@ class _Task:
             )
         for name in changed:
             written.check(name)
-
-
-def _counted(
-    part: str, xml: bytes, edits: Iterable[Edit], result: FillResult
-) -> Iterator[bytes | memoryview]:
-    """Yield the edited part and note in the result how many edits of each kind it took."""
-    counts: Counter[EditKind] = Counter()
-    result.edit_counts[part] = counts
-
-    def noted() -> Iterator[Edit]:
-        for edit in edits:
-            counts[edit.kind] += 1
-            yield edit
-
-    return spliced(xml, noted())

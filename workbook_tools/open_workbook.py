@@ -6,7 +6,7 @@ import functools
 from pathlib import Path
 
 from workbook_tools.archive import Archive
-from workbook_tools.cell_address import Range, parse_range
+from workbook_tools.cell_address import Range
 from workbook_tools.errors import Refusal, UsageError
 from workbook_tools.parts import Sheet, SheetKind, SheetState, read_workbook, table_parts
 from workbook_tools.relations import Named, relations_of
@@ -15,6 +15,7 @@ from workbook_tools.sheet_reading import Context, SheetReading
 from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.styles import StyleSheet
 from workbook_tools.tables import Table, read_table
+from workbook_tools.written_values import range_in
 from workbook_tools.xml_offsets import parse
 
 
@@ -125,5 +126,5 @@ class OpenWorkbook:
                 root = parse(self.archive.read(relation.part), relation.part)
                 location = root.find("location")
                 if location is not None and "ref" in location.attributes:
-                    ranges.append(parse_range(location.attributes["ref"]))
+                    ranges.append(range_in(location.attributes["ref"], relation.part))
         return ranges

@@ -7,11 +7,14 @@ from array import array
 from collections.abc import Iterator
 from dataclasses import dataclass, field
 
-from workbook_tools.cell_address import Range, column_letters, parse_range
+import numpy as np
+
+from workbook_tools.cell_address import Range, column_letters
 from workbook_tools.column_widths import width_edits
 from workbook_tools.errors import Refusal
 from workbook_tools.sheet_scan import CellSpan, SheetScan
 from workbook_tools.splice import Edit, EditKind
+from workbook_tools.written_values import range_in
 from workbook_tools.xml_offsets import escape_text, qualified, set_attribute
 
 
@@ -139,12 +142,12 @@ def _headings(new: list[NewCells], prefix: bytes) -> dict[int, list[tuple[int, b
 def _row_edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
     prefix = scan.data.prefix.encode() + b":" if scan.data.prefix else b""
     blocks, headings = _blocks(new, prefix), _headings(new, prefix)
-    rows = set(headings)
-    rows.update(*(block.rows for block in blocks))
+    parts = [np.array(block.rows, dtype=np.int64) for block in blocks]
+    rows = np.unique(np.concatenate([*parts, np.array(list(headings), dtype=np.int64)]))
     spans = _SpansEdits(scan)
     missing: list[bytes] = []
     index, count, numbers = 0, len(scan), scan.numbers
-    for row in sorted(rows):
+    for row in rows.tolist():
         while index < count and numbers[index] < row:
             if missing:
                 yield _inserted_rows(scan, index, missing)
@@ -290,7 +293,7 @@ def _dimension_edits(scan: SheetScan, new: list[NewCells]) -> list[Edit]:
     dimension = scan.outline.find("dimension")
     if dimension is None or "ref" not in dimension.attributes:
         return []
-    old = parse_range(dimension.attributes["ref"])
+    old = range_in(dimension.attributes["ref"], scan.part)
     extents = [one.extent for one in new]
     # An empty sheet says A1, whether or not A1 holds something.
     parts = [*extents, old] if len(scan) or old.width > 1 or old.height > 1 else extents

@@ -5,13 +5,14 @@ from __future__ import annotations
 from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 
-from workbook_tools.cell_address import Range, column_letters, parse_range
+from workbook_tools.cell_address import Range, column_letters
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import Heading, lacks_unit, read_heading
 from workbook_tools.parts import Sheet
 from workbook_tools.sheet_scan import SheetScan, attributes_of
 from workbook_tools.tables import Table
 from workbook_tools.typed_cells import NUMBER, ColumnCells, read_columns, shown_text
+from workbook_tools.written_values import range_in
 
 # A header row stands near the top: above it are titles, contacts, remarks.
 _ROWS_SEARCHED = 200
@@ -181,7 +182,7 @@ class SheetReading:
 
 def _merged(scan: SheetScan) -> list[Range]:
     return [
-        parse_range(cell.attributes["ref"])
+        range_in(cell.attributes.get("ref"), scan.part)
         for group in scan.outline.find_all("mergeCells")
         for cell in group.find_all("mergeCell")
     ]
@@ -194,5 +195,5 @@ def _arrays(scan: SheetScan) -> list[Range]:
         for match in scan.formula_tag.finditer(scan.plain):
             attributes = attributes_of(match[1])
             if attributes.get("t") in (b"array", b"dataTable") and "ref" in attributes:
-                ranges.append(parse_range(attributes["ref"].decode()))
+                ranges.append(range_in(attributes["ref"].decode(), scan.part))
     return ranges

@@ -14,16 +14,18 @@ from bisect import bisect_left, bisect_right
 from collections.abc import Iterator
 from typing import NamedTuple
 
-from workbook_tools.cell_address import column_number
+from workbook_tools.cell_address import MAX_COLUMN, MAX_ROW, column_number
 from workbook_tools.errors import Refusal
 from workbook_tools.shared_strings import read_text
+from workbook_tools.written_values import whole_number
 from workbook_tools.xml_offsets import Element, check_well_formed, parse, unescape
 
 _ATTRIBUTES = rb"""((?:[^"'>]++|"[^"]*+"|'[^']*+')*+)"""
 _ATTRIBUTE = re.compile(rb"""(?:^|\s)([^\s=<>"'/]+)\s*+=\s*+(?:"([^"]*+)"|'([^']*+)')""")
 _SHEET_DATA = re.compile(rb"<(?:[\w.\-]+:)?sheetData(?=[\s/>])" + _ATTRIBUTES + rb">")
 _HIDDEN = re.compile(rb"<!--.*?-->|<\?.*?\?>|<!\[CDATA\[(.*?)\]\]>", re.DOTALL)
-_LETTERS = re.compile(rb"\$?([A-Za-z]+)\$?([0-9]+)")
+_ADDRESS = re.compile(rb"\$?([A-Za-z]{1,3})\$?([0-9]{1,7})")
+_DECLARATION = re.compile(rb"(?:\xef\xbb\xbf)?<\?xml\s.*?\?>", re.DOTALL)
 
 # What stands in the blanked copy for the markup of a CDATA section and for the signs inside it.
 # XML has no such characters of its own.
@@ -77,8 +79,9 @@ class SheetScan:
         check_well_formed(xml, part)
         self.xml = xml
         self.part = part
+        declaration = _DECLARATION.match(xml)
+        self.plain = _blanked(xml, 0 if declaration is None else declaration.end())
         self._find_data()
-        self.plain = _blanked(xml, self.data.start_tag_end, self.data.end_tag_start)
         prefix = self.data.prefix.encode() + b":" if self.data.prefix else b""
         self._prefix = prefix
         self._row_tag = re.compile(b"<" + prefix + rb"row(?=[\s/>])" + _ATTRIBUTES + b">")
@@ -86,6 +89,9 @@ class SheetScan:
         self._cell_close = re.compile(b"</" + prefix + rb"c\s*>")
         self._value = re.compile(
             b"<" + prefix + rb"v(?:\s" + _ATTRIBUTES + rb")?>([^<]*+)</" + prefix + rb"v\s*>"
+        )
+        self._no_value = re.compile(
+            b"<" + prefix + rb"v(?=[\s/>])" + _ATTRIBUTES + rb">(?:\s*+</" + prefix + rb"v\s*>)?"
         )
         self._inline = re.compile(
             b"<" + prefix + rb"is(?=[\s>]).*?</" + prefix + rb"is\s*>", re.DOTALL
@@ -112,16 +118,16 @@ class SheetScan:
         column = 0
         while (match := self._cell_tag.search(plain, position, limit)) is not None:
             attributes = attributes_of(match[1])
-            address = _LETTERS.fullmatch(attributes.get("r", b""))
-            following = column_number(address[1].decode()) if address else column + 1
-            if following <= column or (address and int(address[2]) != self.numbers[index]):
-                raise self._disordered(f"row {self.numbers[index]}")
+            address = attributes.get("r")
+            following = column + 1 if address is None else self._column_of(address, index)
+            if not column < following <= MAX_COLUMN:
+                raise self.disordered(f"row {self.numbers[index]}")
             column = following
             position = match.end()
             if not match[0].endswith(b"/>"):
                 close = self._cell_close.search(plain, position, limit)
                 if close is None:
-                    raise self._disordered(f"row {self.numbers[index]}")
+                    raise self.disordered(f"row {self.numbers[index]}")
                 position = close.end()
             spans.append(
                 CellSpan(
@@ -129,7 +135,7 @@ class SheetScan:
                     match.start(),
                     match.end(),
                     position,
-                    int(attributes.get("s", b"0")),
+                    whole_number(attributes.get("s", b"0"), self.part),
                     attributes.get("t", b"n").decode(),
                     address is not None,
                 )
@@ -151,14 +157,14 @@ class SheetScan:
         if not match[0].endswith(b"/>"):
             close = self._cell_close.search(self.plain, end, self.content_ends[index])
             if close is None:
-                raise self._disordered(address.decode())
+                raise self.disordered(address.decode())
             end = close.end()
         return CellSpan(
             column_number(letters.decode()),
             start,
             match.end(),
             end,
-            int(attributes.get("s", b"0")),
+            whole_number(attributes.get("s", b"0"), self.part),
             attributes.get("t", b"n").decode(),
             True,
         )
@@ -175,7 +181,8 @@ class SheetScan:
             letters = self._last_letters(index)
             number = numbers.get(letters)
             if number is None:
-                number = numbers[letters] = column_number(letters.decode())
+                address = b"%b%d" % (letters, self.numbers[index])
+                number = numbers[letters] = self._column_of(address, index)
             last.append(number)
         return last
 
@@ -190,7 +197,8 @@ class SheetScan:
     def plain_numbers(self, letters: bytes) -> Iterator[tuple[int, int, int, float | None]]:
         """Yield row, offset, style and number of each cell of a column; for regular cells only.
 
-        The number is None where the cell holds anything but a plain number.
+        The number is None where the cell holds anything but a plain number, and infinite where it
+        is larger than any that can be reckoned with.
         """
         pattern = re.compile(
             re.escape(self._opening + letters)
@@ -223,7 +231,7 @@ class SheetScan:
         content = self.plain[cell.tag_end : cell.end]
         close = content.rindex(b"</")
         inner = content[:close].replace(_FILLER, b"").strip()
-        return not inner or re.fullmatch(b"<" + self._prefix + rb"v\s*/>", inner) is not None
+        return not inner or self._no_value.fullmatch(inner) is not None
 
     def value_text(self, cell: CellSpan) -> str | None:
         """Return the text of the cell's `v` element, None where it has none."""
@@ -257,19 +265,37 @@ class SheetScan:
                 return match.span(2) if match[2] is not None else match.span(3)
         return None
 
+    def disordered(self, where: str) -> Refusal:
+        """Return the refusal of a sheet whose rows or cells do not follow each other."""
+        return Refusal(
+            f"{self.part} has rows or cells out of order ({where}); open the workbook in its own"
+            " program, let it repair the file and save it again."
+        )
+
+    def _column_of(self, address: bytes, index: int) -> int:
+        """Return the column of an address that must lie in the row with that index."""
+        parts = _ADDRESS.fullmatch(address)
+        if parts is not None and int(parts[2]) == self.numbers[index]:
+            number = 0
+            for letter in parts[1].upper():
+                number = number * 26 + letter - ord("A") + 1
+            if number <= MAX_COLUMN:
+                return number
+        raise self.disordered(f"row {self.numbers[index]}")
+
     def _last_letters(self, index: int) -> bytes:
         start = self.plain.rfind(self._opening, self.tag_ends[index], self.content_ends[index])
         if start < 0:
             return b""
         match = self._start.match(self.plain, start)
         if match is None or not self.plain.startswith(b'%d"' % self.numbers[index], match.end()):
-            raise self._disordered(f"row {self.numbers[index]}")
+            raise self.disordered(f"row {self.numbers[index]}")
         return match[1]
 
     def _find_data(self) -> None:
-        opening = _SHEET_DATA.search(self.xml)
+        opening = _SHEET_DATA.search(self.plain)
         name = opening[0][1:].split(b"sheetData")[0] if opening is not None else b""
-        closing = self.xml.rfind(b"</" + name + b"sheetData") if opening is not None else -1
+        closing = self.plain.rfind(b"</" + name + b"sheetData") if opening is not None else -1
         skipped = range(0)
         if opening is not None and not opening[0].endswith(b"/>"):
             skipped = range(opening.end(), closing)
@@ -292,17 +318,17 @@ class SheetScan:
         row_number = re.compile(rb"""(?:^|\s)r\s*=\s*["']\s*(\d+)""")
         while (match := find_tag(plain, position, limit)) is not None:
             said = row_number.search(match[1])
-            following = int(said[1]) if said is not None else number + 1
+            following = int(said[1][:8]) if said is not None else number + 1
             self.rows_explicit &= said is not None
-            if following <= number:
-                raise self._disordered(f"row {following}")
+            if not number < following <= MAX_ROW:
+                raise self.disordered(f"row {following}")
             number = following
             tag_end = content_end = position = match.end()
             if plain[tag_end - 2 : tag_end] != b"/>":
                 content_end = plain.find(closing, tag_end, limit)
                 position = plain.find(b">", content_end, limit) + 1
                 if content_end < 0 or position == 0:
-                    raise self._disordered(f"row {number}")
+                    raise self.disordered(f"row {number}")
             self.numbers.append(number)
             self.starts.append(match.start())
             self.tag_ends.append(tag_end)
@@ -311,23 +337,12 @@ class SheetScan:
         if not len(self.numbers) and plain[self.data.start_tag_end : limit].strip(
             _FILLER + b" \r\n\t"
         ):
-            raise self._disordered("its rows")
+            raise self.disordered("its rows")
 
     def _cells_are_regular(self) -> bool:
         """Tell whether every `<c` is followed by its address, in capitals."""
-        start, end = self.data.start_tag_end, self.data.end_tag_start
-        stem = self._opening[:-4]
-        addressed = self.plain.count(self._opening, start, end)
-        others = sum(
-            self.plain.count(stem + sign, start, end) for sign in (b"\t", b"\n", b"\r", b">", b"/")
-        )
-        return addressed == self.plain.count(stem + b" ", start, end) and not others
-
-    def _disordered(self, where: str) -> Refusal:
-        return Refusal(
-            f"{self.part} has rows or cells out of order ({where}); open the workbook in its own"
-            " program, let it repair the file and save it again."
-        )
+        odd = re.compile(re.escape(self._opening[:-4]) + rb'(?! r="[A-Z]{1,3}[1-9]\d{0,6}")[\s/>]')
+        return odd.search(self.plain, self.data.start_tag_end, self.data.end_tag_start) is None
 
 
 def attributes_of(raw: bytes) -> dict[str, bytes]:
@@ -344,14 +359,14 @@ def _decoded(raw: bytes) -> str:
     return unescape(text.decode()).translate(_CDATA_BACK)
 
 
-def _blanked(xml: bytes, start: int, end: int) -> bytes:
-    """Return the part with comments, processing instructions and CDATA marks between the offsets
+def _blanked(xml: bytes, start: int) -> bytes:
+    """Return the part with comments, processing instructions and CDATA marks from `start` on
     blanked out, every other byte in its place; the part itself where there are none.
     """
-    if all(xml.find(sign, start, end) < 0 for sign in (b"<!", b"<?")):
+    if all(xml.find(sign, start) < 0 for sign in (b"<!", b"<?")):
         return xml
     pieces, position = [xml[:start]], start
-    for match in _HIDDEN.finditer(xml, start, end):
+    for match in _HIDDEN.finditer(xml, start):
         pieces.append(xml[position : match.start()])
         body = match[1]
         if body is None:

@@ -2,9 +2,12 @@
 
 from __future__ import annotations
 
+from collections import Counter
 from collections.abc import Iterable, Iterator
 from enum import StrEnum
 from typing import NamedTuple
+
+_BLOCK = 1 << 17
 
 
 class EditKind(StrEnum):
@@ -32,27 +35,38 @@ class Edit(NamedTuple):
     new: bytes
 
 
-def spliced(original: bytes, edits: Iterable[Edit]) -> Iterator[bytes | memoryview]:
-    """Yield the pieces of the edited part in order, without a second copy of the original.
+def spliced(
+    original: bytes, edits: Iterable[Edit], counts: Counter[EditKind] | None = None
+) -> Iterator[bytes]:
+    """Yield the edited part in blocks, without a second copy of the original.
 
     Args:
         original: the whole part.
         edits: sorted by `start`, not overlapping.
+        counts: gets the number of edits of each kind.
     Raises:
         ValueError: edits out of order, overlapping or beyond the part (a bug of ours).
     """
     view = memoryview(original)
-    position = 0
-    for edit in edits:
-        if not position <= edit.start <= edit.end <= len(original):
-            raise ValueError(f"{edit.kind} at {edit.start}:{edit.end} overlaps or runs outside")
-        if edit.start > position:
-            yield view[position : edit.start]
-        if edit.new:
-            yield edit.new
-        position = edit.end
-    if position < len(original):
-        yield view[position:]
+    pieces: list[bytes | memoryview] = []
+    position = held = 0
+    length = len(original)
+    kinds: list[EditKind] = []
+    for kind, start, end, new in edits:
+        if not position <= start <= end <= length:
+            raise ValueError(f"{kind} at {start}:{end} overlaps or runs outside")
+        pieces += (view[position:start], new)
+        held += start - position + len(new)
+        kinds.append(kind)
+        position = end
+        if held > _BLOCK:
+            yield b"".join(pieces)
+            pieces, held = [], 0
+    yield b"".join(pieces)
+    for start in range(position, length, _BLOCK):
+        yield original[start : start + _BLOCK]
+    if counts is not None:
+        counts.update(kinds)
 
 
 def undone(edited: bytes, edits: Iterable[Edit], removed: Iterable[bytes]) -> bytes:

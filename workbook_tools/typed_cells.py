@@ -15,6 +15,7 @@ from dataclasses import dataclass, field
 from epochconv.number_text import plain_number
 from workbook_tools.cell_address import column_letters
 from workbook_tools.sheet_scan import CellSpan, SheetScan
+from workbook_tools.written_values import whole_number
 
 ABSENT, EMPTY, NUMBER, LEFT = range(4)
 
@@ -100,7 +101,7 @@ def shown_text(scan: SheetScan, cell: CellSpan, text_of: TextOf) -> str:
     if value is None:
         return ""
     if cell.type == "s":
-        return text_of(int(value))
+        return text_of(whole_number(value, scan.part))
     if cell.type == "b":
         return "TRUE" if value.strip() == "1" else "FALSE"
     return value
@@ -144,11 +145,13 @@ class _ColumnReader:
                 index += 1
             if index >= stop:
                 break
+            if rows[index] != row or not scan.starts[index] < start < scan.ends[index]:
+                raise scan.disordered(f"{letters.decode()}{row}")
             position = index - cells.indices.start
-            if number is None or rows[index] != row or start > scan.ends[index]:
-                cell = scan.find_cell(index, letters) if rows[index] == row else None
-                if cell is not None:
-                    self.take(position, cell)
+            if number is None or not -math.inf < number < math.inf:
+                cell = scan.find_cell(index, letters)
+                assert cell is not None  # it has just been seen there
+                self.take(position, cell)
             elif self._shows_dates(style):
                 self._leave(position, style, _DATE, str(number))
             else:
