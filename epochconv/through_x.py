@@ -44,10 +44,7 @@ def moment_at(
         TwoAnswersError: a value stands for two moments and no side is chosen.
         ArgumentError: `side` or `outside` is another word.
     """
-    if side is not None and side not in SIDES:
-        raise ArgumentError(f"side={side!r} is neither 'nearer' nor 'farther'")
-    if outside not in ("raise", "nan"):
-        raise ArgumentError(f"outside={outside!r} is neither 'raise' nor 'nan'")
+    _check_words(side, outside)
     low, high = inverse.range_of(measure, history)
     values = _inside(values, measure, history, (low, high), outside, shape)
     found = inverse.roots(measure, values, history)
@@ -108,11 +105,19 @@ def convert_values(
     Raises: as `moment_at` and `values_at`.
     """
     if source is target:
+        _check_words(side, outside)
         limits = inverse.range_of(source, history)
         return np.array(_inside(values, source, history, limits, outside, shape), copy=True)
     moment = moment_at(values, source, history, side=side, outside=outside, shape=shape)
     result = values_at(moment, target, history, outside=outside, shape=shape)
     return result.copy() if result is values else result
+
+
+def _check_words(side: str | None, outside: str) -> None:
+    if side is not None and side not in SIDES:
+        raise ArgumentError(f"side={side!r} is neither 'nearer' nor 'farther'")
+    if outside not in ("raise", "nan"):
+        raise ArgumentError(f"outside={outside!r} is neither 'raise' nor 'nan'")
 
 
 def _inside(
