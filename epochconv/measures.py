@@ -13,9 +13,10 @@ from epochconv.hermite import FloatArray
 from epochconv.history import ExpansionHistory
 from epochconv.measure import Measure
 from epochconv.moment import Moment
+from epochconv.printing import number_text
 from epochconv.tables import HIGHEST_REDSHIFT
 
-_BEFORE_TABLE = f"is earlier than redshift {HIGHEST_REDSHIFT:g}, where the tables end"
+_BEFORE_TABLE = f"is earlier than redshift {number_text(HIGHEST_REDSHIFT)}, where the tables end"
 _HOGG = "Hogg 1999, arXiv:astro-ph/9905116"
 _NO_EPOCH = "is a neighbour's peculiar motion towards us and no epoch"
 
@@ -59,7 +60,10 @@ def _transverse(x: FloatArray, history: ExpansionHistory) -> tuple[FloatArray, F
         if curvature > 0.0:
             distance, slope = np.sinh(angle) / root, slope * np.cosh(angle)
         else:
-            distance, slope = np.sin(angle) / root, slope * np.cos(angle)
+            # Beyond the antipode the sine is negative, but the distance is a length all the same.
+            sine = np.sin(angle)
+            distance = np.abs(sine) / root
+            slope = slope * np.cos(angle) * np.copysign(1.0, sine)
     return length * distance, length * slope
 
 
@@ -70,6 +74,7 @@ def _transverse_distance(moment: Moment, history: ExpansionHistory) -> FloatArra
         bend = np.sinh if history.curvature > 0.0 else np.sin
         distance /= length
         bend(distance, out=distance)
+        np.abs(distance, out=distance)
         distance *= length
     return distance
 
