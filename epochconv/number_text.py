@@ -5,7 +5,8 @@
     exponent = ("e" | "E") [sign] digits
     sign     = "+" | "-" | "−" (U+2212)
 
-The unit is one of the closed table. Anything else (a comma, digit groups, words) is not read.
+The unit is one of the closed table. Anything else (a comma, digit groups, words) is not read; nor
+are a digit or a dash for "no unit", which in a text mean that something else was typed.
 """
 
 from __future__ import annotations
@@ -49,7 +50,7 @@ def number_and_unit(text: str) -> tuple[float, Unit | None]:
     if not rest:
         return number, None
     unit = find_unit(rest)
-    if unit is None:
+    if unit is None or (unit.dimension == "number" and not rest.isalpha()):
         raise ArgumentError(
             f"{rest!r} in {text!r} is not a unit that is known here (case matters); "
             "write it like '10.9 Gyr', '450 Mpc', '45 Gly' or '3000 K'"
