@@ -29,6 +29,7 @@ def add_measure(measure: Measure) -> None:
         ArgumentError: its unit is unknown, it has no way back to moments, or its name, alias or
             symbol is taken by another; nothing is registered then.
     """
+    _load_providers()
     if find_unit(measure.unit) is None:
         raise ArgumentError(f"measure {measure.name!r}: unit {measure.unit!r} is not in the table")
     one_to_one = measure.moment_of is not None and measure.range_of is not None
@@ -38,16 +39,14 @@ def add_measure(measure: Measure) -> None:
             "or rescaled_from"
         )
     names = {folded(name) for name in (measure.name, *measure.aliases)}
-    for name in sorted(names):
-        if name in _by_name:
+    for kind, word in [*(("name", name) for name in sorted(names)), ("symbol", measure.symbol)]:
+        # A symbol that is another's name would hide that name, and the other way round.
+        taken = _by_symbol.get(word) or _by_name.get(folded(word))
+        if taken is not None:
             raise ArgumentError(
-                f"measure {measure.name!r}: the name {name!r} belongs to {_by_name[name].name!r}"
+                f"measure {measure.name!r}: the {kind} {word!r} belongs to {taken.name!r}; "
+                "choose another"
             )
-    if measure.symbol in _by_symbol:
-        taken = _by_symbol[measure.symbol].name
-        raise ArgumentError(
-            f"measure {measure.name!r}: the symbol {measure.symbol!r} belongs to {taken!r}"
-        )
     _measures[measure.name] = measure
     _by_symbol[measure.symbol] = measure
     _by_name.update(dict.fromkeys(names, measure))
