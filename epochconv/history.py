@@ -19,6 +19,8 @@ from epochconv.units import Unit, unit_named
 
 _ELECTRONVOLT = Unit("eV", "energy", constants.ELECTRONVOLT_J, "electron_volt", ("eV",))
 _SPENT = 1e-12
+# Beyond this it is matter or curvature, and not the dark energy, whose squares overflow.
+_ABSURD = 1e100
 
 
 class ExpansionHistory:
@@ -234,7 +236,7 @@ def _expansion_of(parameters: tuple[Any, ...]) -> Expansion:
     photons = massless = 0.0
     massive: list[tuple[float, float]] = []
     if radiation:
-        photons = expansion.photon_density(temperature, rate)
+        photons = _photons(temperature, rate)
         one = expansion.massless_species_density(photons, species)
         neutrino_temperature = expansion.neutrino_temperature(temperature, species)
         massless = one * masses.count(0.0)
@@ -266,6 +268,16 @@ def _expansion_of(parameters: tuple[Any, ...]) -> Expansion:
     return law
 
 
+def _photons(temperature: float, rate: float) -> float:
+    try:
+        return expansion.photon_density(temperature, rate)
+    except (OverflowError, ZeroDivisionError):
+        raise ArgumentError(
+            f"hubble_constant={rate!r} and temperature_today={temperature!r} are too far apart to "
+            "compute the density of radiation; give H0 in km/s/Mpc and the temperature in K"
+        ) from None
+
+
 def _check_big_bang(law: Expansion, matter: float) -> None:
     """Refuse a history that never began, or whose E² is not above zero all the way back."""
     w0, wa = law.w0, law.wa
@@ -279,6 +291,9 @@ def _check_big_bang(law: Expansion, matter: float) -> None:
         lowest, where = _lowest(law, x)
         late = law.late_shape(HIGHEST_X + np.linspace(0.0, 60.0, 241))
     if not np.isfinite(lowest) or not np.all(np.isfinite(late)):
+        for name, value in (("matter", matter), ("curvature", law.curvature)):
+            if abs(value) > _ABSURD:
+                raise ArgumentError(f"{name}={value!r} is too large; give a fraction of the budget")
         raise ArgumentError(
             f"dark_energy=({w0!r}, {wa!r}) grows beyond all numbers in the early universe; "
             "give w0 + wa below about 1"
@@ -330,12 +345,15 @@ def _number(name: str, value: Any, unit: Unit | None = None) -> float:
     """Return a parameter as a finite float in its documented unit."""
     if is_quantity(value):
         value = magnitude_of(value, unit or unit_named(""), name)
-    if isinstance(value, bool | np.bool_ | str | bytes):
+    array = isinstance(value, np.ndarray) and value.ndim > 0
+    if array or isinstance(value, bool | np.bool_ | np.complexfloating | str | bytes):
         raise ArgumentError(f"{name}={value!r} is not a number")
     try:
         number = float(value)
     except (TypeError, ValueError):
         raise ArgumentError(f"{name}={value!r} is not a number") from None
+    except OverflowError:
+        number = math.inf
     if not math.isfinite(number):
         raise ArgumentError(f"{name}={value!r} is not a finite number")
     return number
@@ -343,9 +361,9 @@ def _number(name: str, value: Any, unit: Unit | None = None) -> float:
 
 def _above(name: str, value: float, limit: float) -> None:
     if value <= limit:
-        raise ArgumentError(f"{name}={value!r} is not above {limit:g}")
+        raise ArgumentError(f"{name}={value!r} is not above {limit:g}; give a number that is")
 
 
 def _not_below(name: str, value: float, limit: float) -> None:
     if value < limit:
-        raise ArgumentError(f"{name}={value!r} is below {limit:g}")
+        raise ArgumentError(f"{name}={value!r} is below {limit:g}; give {limit:g} or above")
