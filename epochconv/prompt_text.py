@@ -66,7 +66,9 @@ def read_wanted(text: str) -> tuple[Measure, Unit]:
 
 def _check_dimension(measure: Measure, own: Unit, unit: Unit) -> None:
     if unit.dimension != own.dimension:
-        fitting = ", ".join(symbols(own.dimension)) or "none (a bare number)"
+        fitting = symbols(own.dimension)
+        remedy = f"use {', '.join(fitting)}" if fitting else "give a bare number"
         raise ArgumentError(
-            f"{unit.symbol or '1'} is no unit of {measure.name}; it is a {own.dimension}: {fitting}"
+            f"{unit.symbol or 'no unit'} does not fit {measure.name}, "
+            f"which is a {own.dimension}; {remedy}"
         )

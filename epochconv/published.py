@@ -128,6 +128,10 @@ def history_of(history: ExpansionHistory | str | None) -> ExpansionHistory:
         return history
     if history is None:
         return _BY_NAME[DEFAULT].history
+    if not isinstance(history, str):
+        raise ArgumentError(
+            f"history={history!r} is neither an ExpansionHistory nor the name of a parameter set"
+        )
     return parameter_set(history).history
 
 
