@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from decimal import Decimal
+from fractions import Fraction
 from typing import Any, Literal
 
 import numpy as np
@@ -34,7 +36,7 @@ def convert(
     Args:
         value: what to convert, of any shape: numbers, arrays or lists in the source measure's
             documented unit (Gyr, Mpc, K, mag, km/s/Mpc, or none); a pint quantity of any registry;
-            or a text such as "10.9 Gyr". NaN in gives NaN out.
+            or a text such as "10.9 Gyr". NaN in gives NaN out, and so does what a mask hides.
         source, target: names, aliases or symbols of measures: "redshift", "scale factor",
             "lookback time", "age", "comoving distance" (along the line of sight),
             "CMB temperature", "transverse comoving distance", "luminosity distance",
@@ -107,14 +109,21 @@ def plain_values(value: Any, measure: Measure) -> tuple[FloatArray, tuple[int, .
         value = magnitude_of(value, unit, measure.name)
     if isinstance(value, float):
         return np.array([value]), ()
+    if isinstance(value, Decimal | Fraction):
+        value = float(value)
     try:
-        array = np.asarray(value)
-    except ValueError:
-        raise ArgumentError(f"{measure.name}: {value!r} is no array of numbers") from None
+        array = np.asanyarray(value)
+    except (TypeError, ValueError):
+        raise ArgumentError(
+            f"{measure.name}: {_shortened(value)} is no array of numbers; give numbers, or one "
+            "quantity that holds an array of them"
+        ) from None
     if array.dtype.kind not in "iuf":
         raise ArgumentError(f"{measure.name}: {_shortened(value)} is not made of numbers")
     array = array.astype(np.float64, copy=False)
-    return np.ravel(array), array.shape
+    if isinstance(array, np.ma.MaskedArray):
+        array = array.filled(np.nan)
+    return np.ravel(np.asarray(array)), array.shape
 
 
 def _shortened(value: object) -> str:

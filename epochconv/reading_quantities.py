@@ -9,6 +9,8 @@ from __future__ import annotations
 import weakref
 from typing import Any
 
+import numpy as np
+
 from epochconv.constants import PARSEC_M
 from epochconv.errors import ArgumentError
 from epochconv.units import Unit, factor, find_unit
@@ -38,14 +40,20 @@ def magnitude_of(quantity: Any, unit: Unit, name: str) -> Any:
     """Return the magnitude of `quantity` in `unit`; `name` says in errors what it is.
 
     Raises:
-        ArgumentError: the quantity has another dimension, or an offset unit (degrees Celsius).
+        ArgumentError: the quantity has another dimension, an offset unit (degrees Celsius), or a
+            registry that lacks the units to tell.
     """
     known = _factors.setdefault(type(quantity), {})
     key = (tuple(quantity.unit_items()), unit)
     scale = known.get(key)
     if scale is None:
         scale = known[key] = _factor(quantity, unit, name)
-    return quantity.magnitude if scale == 1.0 else quantity.magnitude * scale
+    if scale == 1.0:
+        return quantity.magnitude
+    try:
+        return quantity.magnitude * scale
+    except TypeError:  # a registry may count in Decimal or Fraction, which keep apart from floats
+        return np.asarray(quantity.magnitude, dtype=np.float64) * scale
 
 
 def parsec_correction(quantity: Any) -> float:
@@ -74,10 +82,14 @@ def _factor(quantity: Any, unit: Unit, name: str) -> float:
     base = BASE_NAMES[unit.dimension]
     make = type(quantity)
     one = make(1.0, quantity.units)
-    if one.dimensionality != make(1.0, base).dimensionality:
+    try:
+        fits = one.dimensionality == make(1.0, base).dimensionality
+    except AttributeError:  # what registries raise for a unit that they lack
+        fits = False
+    if not fits:
+        remedy = f"give it in a unit such as {unit.symbol}" if unit.symbol else "give a bare number"
         raise ArgumentError(
-            f"{name} is in {quantity.units}, which is no {_described(unit)}; "
-            f"give it in a unit such as {unit.symbol or 'none (a bare number)'}"
+            f"{name} is in {quantity.units}, which is no {_described(unit)}; {remedy}"
         )
     if make(0.0, quantity.units).m_as(base) != 0.0:
         raise ArgumentError(
