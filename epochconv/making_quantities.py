@@ -6,6 +6,7 @@ import weakref
 from typing import Any
 
 import pint
+from pint.util import UnitsContainer
 
 from epochconv.errors import ArgumentError
 from epochconv.reading_quantities import (
@@ -16,8 +17,9 @@ from epochconv.reading_quantities import (
 )
 from epochconv.units import Unit, factor, find_unit
 
-# Quantity class of a registry -> {(unit wanted, our unit): (the registry's unit, factor)}.
-_targets: weakref.WeakKeyDictionary[type, dict[tuple[Any, Unit], tuple[Any, float]]] = (
+# Quantity class of a registry -> {(unit wanted, our unit): (names of its units, factor)}.
+# A unit object in place of the names would keep its registry alive for ever.
+_targets: weakref.WeakKeyDictionary[type, dict[tuple[Any, Unit], tuple[UnitsContainer, float]]] = (
     weakref.WeakKeyDictionary()
 )
 
@@ -32,7 +34,7 @@ def quantity_of(magnitude: Any, unit: Unit, wanted: Any, asker: object) -> Any:
             quantity of any registry, in which the result then lives.
         asker: the value that the caller gave; without `wanted`, a quantity's registry is kept.
     Raises:
-        ArgumentError: `wanted` is unknown or of another dimension.
+        ArgumentError: `wanted` is unknown or of another dimension, or the registry lacks our unit.
     """
     if wanted is None or isinstance(wanted, str):
         key: Any = wanted
@@ -42,13 +44,16 @@ def quantity_of(magnitude: Any, unit: Unit, wanted: Any, asker: object) -> Any:
             make = pint.get_application_registry().Quantity  # type: ignore[no-untyped-call]
     elif hasattr(wanted, "dimensionality"):
         one = wanted if is_quantity(wanted) else 1.0 * wanted
+        if one.magnitude != 1:
+            raise ArgumentError(f"unit={str(wanted)!r} is not one unit; give the unit alone")
         make, key = type(one), tuple(one.unit_items())
     else:
         raise ArgumentError(f"unit={wanted!r} is neither a text nor a pint unit")
     known = _targets.setdefault(make, {})
     target = known.get((key, unit))
     if target is None:
-        target = known[key, unit] = _target(make, wanted, unit)
+        one, scale = _target(make, wanted, unit)
+        target = known[key, unit] = UnitsContainer(dict(one.unit_items())), scale
     units, scale = target
     if scale != 1.0:
         magnitude *= scale
@@ -56,9 +61,9 @@ def quantity_of(magnitude: Any, unit: Unit, wanted: Any, asker: object) -> Any:
 
 
 def _target(make: Any, wanted: Any, unit: Unit) -> tuple[Any, float]:
-    """Return the registry's unit and the factor from ours to it."""
+    """Return one of the registry's unit and the factor from our unit to it."""
     if wanted is None:
-        return make(1.0, unit.long_name).units, 1.0
+        return _own_unit(make, unit), 1.0
     if isinstance(wanted, str):
         ours = find_unit(wanted)
         try:
@@ -69,7 +74,9 @@ def _target(make: Any, wanted: Any, unit: Unit) -> tuple[Any, float]:
         one = make(1.0, wanted.units if is_quantity(wanted) else wanted)
         ours = table_unit_of(one)
     if ours is not None and ours.dimension == unit.dimension:
-        return one.units, factor(unit, ours)
+        return one, factor(unit, ours)
+    if unit.dimension == "magnitude" and ours is not None and ours.dimension == "number":
+        return one, 1.0  # registries have no magnitudes: a bare number is what they hold
     base = make(1.0, BASE_NAMES[unit.dimension])
     if ours is not None or one.dimensionality != base.dimensionality:
         raise ArgumentError(
@@ -78,4 +85,14 @@ def _target(make: Any, wanted: Any, unit: Unit) -> tuple[Any, float]:
         )
     if make(0.0, one.units).m_as(base.units) != 0.0:
         raise ArgumentError(f"unit={str(wanted)!r} is a scale with its own zero; use K")
-    return one.units, unit.size / (float(one.m_as(base.units)) * parsec_correction(one))
+    return one, unit.size / (float(one.m_as(base.units)) * parsec_correction(one))
+
+
+def _own_unit(make: Any, unit: Unit) -> Any:
+    try:
+        return make(1.0, unit.long_name)
+    except AttributeError:  # what registries raise for a unit that they lack
+        raise ArgumentError(
+            f"the result is in {unit.symbol}, and the registry that it belongs to has no "
+            f"{unit.long_name!r}; define it there, or choose another unit with unit="
+        ) from None
