@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import argparse
+import contextlib
+import os
 import sys
 from collections.abc import Iterable, Sequence
 from typing import TYPE_CHECKING, Any
@@ -36,12 +38,17 @@ def main(arguments: Sequence[str] | None = None) -> int:
     parser = _parser()
     options = parser.parse_args(arguments)
     try:
-        return _run(options)
-    except BrokenPipeError:
-        sys.stderr.close()
-        return 0
+        code = _run(options)
+        if sys.stdout is not None:
+            sys.stdout.flush()
     except KeyboardInterrupt:
         return 130
+    except OSError as error:
+        _stop_writing()
+        if isinstance(error, BrokenPipeError):  # whoever reads has had enough
+            return 0
+        return _complain(f"reading or writing failed: {error.strerror or error}", 1)
+    return code
 
 
 def _parser() -> argparse.ArgumentParser:
@@ -84,7 +91,7 @@ def _run(options: argparse.Namespace) -> int:
     except EpochconvError as error:
         return _complain(str(error), 2)
     many = options.given == "-"
-    texts: Iterable[str] = sys.stdin if many else [options.given]
+    texts: Iterable[str] = (sys.stdin or ()) if many else [options.given]
     worst = 0
     for number, text in enumerate(texts, start=1):
         if many and not text.strip():
@@ -143,9 +150,16 @@ def _complain(message: str, code: int) -> int:
     return code
 
 
+def _stop_writing() -> None:
+    """Point standard output nowhere, so that the interpreter's last flush cannot fail again."""
+    if sys.stdout is not None:
+        with contextlib.suppress(OSError, ValueError), open(os.devnull, "w") as nowhere:
+            os.dup2(nowhere.fileno(), sys.stdout.fileno())
+
+
 def _speak_plainly_where_needed() -> None:
-    """Replace letters such as Ω where the output's encoding has none, instead of failing."""
-    for stream in (sys.stdout, sys.stderr):
+    """Replace letters such as Ω where an encoding has none, and bytes that spell none."""
+    for stream in (sys.stdin, sys.stdout, sys.stderr):
         reconfigure = getattr(stream, "reconfigure", None)
         if reconfigure is not None:
             reconfigure(errors="replace")
