@@ -25,7 +25,7 @@ from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import GENERAL, StyleSheet
 from workbook_tools.tables import Table, free_names
-from workbook_tools.typed_cells import LEFT, NUMBER, ColumnCells
+from workbook_tools.typed_cells import EMPTY, LEFT, NUMBER, ColumnCells
 
 IndexArray = NDArray[np.intp]
 BoolArray = NDArray[np.bool_]
@@ -189,7 +189,7 @@ class _Filler:
         """Plan the blanks of columns that are there."""
         for target in self.reading.columns([column for column, _ in targets]):
             heading = dict(targets)[target.column]
-            blank = np.frombuffer(target.kinds, dtype=np.uint8) < NUMBER
+            blank = np.frombuffer(target.kinds, dtype=np.uint8) <= EMPTY
             if not np.any(blank & (np.frombuffer(self.source.kinds, dtype=np.uint8) >= NUMBER)):
                 continue
             self._refuse_blocked(target.column)

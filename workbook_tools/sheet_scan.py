@@ -244,19 +244,31 @@ class SheetScan:
         return "" if match is None else read_text(self.xml[match.start() : match.end()]).text
 
     def formula(self, cell: CellSpan) -> str | None:
-        """Return the formula text of a cell ("" for a child of a shared one), None for none."""
+        """Return the formula text of a cell, None for none.
+
+        Where the cell shares a formula, it is the text that stands in the first of its cells.
+        """
         match = self.formula_tag.search(self.plain, cell.tag_end, cell.end)
         if match is None:
             return None
+        text, attributes = self._formula_text(match), attributes_of(match[1])
+        if text or attributes.get("t") != b"shared":
+            return text
+        return self._shared_formulas.get(attributes.get("si", b""), "")
+
+    @functools.cached_property
+    def _shared_formulas(self) -> dict[bytes, str]:
+        found: dict[bytes, str] = {}
+        for match in self.formula_tag.finditer(self.plain):
+            attributes, text = attributes_of(match[1]), self._formula_text(match)
+            if text and attributes.get("t") == b"shared":
+                found.setdefault(attributes.get("si", b""), text)
+        return found
+
+    def _formula_text(self, match: re.Match[bytes]) -> str:
         if match[0].endswith(b"/>"):
             return ""
         return _decoded(self.plain[match.end() : self.plain.index(b"<", match.end())])
-
-    def row_attributes(self, index: int) -> dict[str, bytes]:
-        """Return the attributes of a row element."""
-        match = self._row_tag.match(self.plain, self.starts[index])
-        assert match is not None
-        return attributes_of(match[1])
 
     def row_attribute_span(self, index: int, name: bytes) -> tuple[int, int] | None:
         """Return where the value of a row's attribute lies, None where the row has none."""

@@ -102,4 +102,4 @@ def known_heading(text: str, option: str) -> Heading:
 
 
 def _filled_rows(cells: ColumnCells) -> frozenset[int]:
-    return frozenset(p for p in range(len(cells.kinds)) if not cells.is_blank(p))
+    return frozenset(p for p, kind in enumerate(cells.kinds) if kind >= NUMBER)

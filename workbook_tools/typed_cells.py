@@ -17,14 +17,18 @@ from workbook_tools.cell_address import column_letters
 from workbook_tools.sheet_scan import CellSpan, SheetScan
 from workbook_tools.written_values import whole_number
 
-ABSENT, EMPTY, NUMBER, LEFT = range(4)
+ABSENT, EMPTY, WHITE, NUMBER, LEFT = range(5)
 
-# A formula that sums up a column stands in a line of totals, not in a row of the log.
+# A formula that sums up a column stands in a line of totals, not in a row of the log; one that only
+# looks at cells of one row, such as the mean of two spectra, is a value like any other.
 _SUMMARY = re.compile(
     r"\b(?:SUM|SUBTOTAL|AGGREGATE|AVERAGE|MEDIAN|COUNT|COUNTA|MIN|MAX|STDEV|VAR|SUMPRODUCT)"
     r"(?:\.[SP]|A|IFS?)?\s*\(",
     re.IGNORECASE,
 )
+_RANGE = re.compile(r"\$?[A-Z]{1,3}\$?([0-9]{1,7}):\$?[A-Z]{1,3}\$?([0-9]{1,7})", re.IGNORECASE)
+_MOVING_ROW = re.compile(r"(?<![\w.$])\$?[A-Z]{1,3}([0-9]{1,7})(?![\w.(\[])", re.IGNORECASE)
+_THIS_ROW = re.compile(r"\[\[?#This Row\]", re.IGNORECASE)
 
 _DATE = "a date, not a number; what was typed is lost"
 
@@ -38,10 +42,10 @@ class ColumnCells:
     Attributes:
         column: counted from 1.
         indices: indices of the rows in the scan.
-        kinds: ABSENT (no element), EMPTY (an element that holds nothing), NUMBER or LEFT.
+        kinds: ABSENT (no element), EMPTY (an element that holds nothing), WHITE (a text without a
+            visible sign, which is nothing to read and nothing to overwrite), NUMBER or LEFT.
         numbers: the value of each NUMBER cell; 0 elsewhere.
         styles: the format of each cell; -1 where there is no element.
-        spans: where each EMPTY cell lies, by position in `indices`.
         reasons: why a LEFT cell is left, by position.
         texts: what a LEFT cell shows, by position.
         from_text, from_formulas: how many numbers were text, or results of formulas.
@@ -52,7 +56,6 @@ class ColumnCells:
     kinds: bytearray
     numbers: array[float]
     styles: array[int]
-    spans: dict[int, CellSpan] = field(default_factory=dict)
     reasons: dict[int, str] = field(default_factory=dict)
     texts: dict[int, str] = field(default_factory=dict)
     from_text: int = 0
@@ -165,12 +168,14 @@ class _ColumnReader:
         cells.styles[position] = cell.style
         if self.scan.is_empty(cell):
             cells.kinds[position] = EMPTY
-            cells.spans[position] = cell
             return
         formula = self.scan.formula(cell)
-        found = self._number_or_reason(cell, formula)
+        text = shown_text(self.scan, cell, self.text_of)
+        if not text.strip() and (formula is None or cell.type == "str"):
+            cells.kinds[position] = WHITE
+            return
+        found = self._number_or_reason(cell, formula, text)
         if isinstance(found, str):
-            text = shown_text(self.scan, cell, self.text_of)
             self._leave(position, cell.style, found, text)
             return
         cells.kinds[position] = NUMBER
@@ -185,11 +190,10 @@ class _ColumnReader:
         cells.reasons[position] = reason
         cells.texts[position] = text
 
-    def _number_or_reason(self, cell: CellSpan, formula: str | None) -> float | str:
-        if formula is not None and _SUMMARY.search(formula):
+    def _number_or_reason(self, cell: CellSpan, formula: str | None, text: str) -> float | str:
+        if formula is not None and _sums_up_rows(formula):
             return "a formula over other cells, not a row of the log"
-        text = shown_text(self.scan, cell, self.text_of)
-        if not text:
+        if not text.strip():
             return "a formula without a stored result; recalculate and save the workbook first"
         if cell.type == "b":
             return f"not read: {text}"
@@ -207,6 +211,14 @@ class _ColumnReader:
         if known is None:
             known = self.dates[style] = self.is_date(style)
         return known
+
+
+def _sums_up_rows(formula: str) -> bool:
+    if _SUMMARY.search(formula) is None or _THIS_ROW.search(formula) is not None:
+        return False
+    if any(first != last for first, last in _RANGE.findall(formula)):
+        return True
+    return len(set(_MOVING_ROW.findall(formula))) != 1
 
 
 def _shortened(text: str) -> str:
