@@ -14,7 +14,7 @@ BoolArray = NDArray[np.bool_]
 
 # Elements handled at a time: the handful of work arrays of this length stay in the second-level
 # cache, which makes the evaluation several times faster than whole-array passes.
-BLOCK = 8192
+BLOCK = 16384
 
 
 class HermitePieces:
@@ -37,7 +37,11 @@ class HermitePieces:
         self.origin = origin
         self.inverse_step = 1.0 / step
         self.pieces = len(values) - 1
-        self.coefficients = quintic_coefficients(step, values, slopes, curvatures)
+        # One piece more, for the last knot itself: no position then needs a check of its own (a
+        # NaN looks into piece 0 and stays NaN).
+        rows = quintic_coefficients(step, values, slopes, curvatures)
+        end = np.array([[values[-1]], [slopes[-1] * step], [0.0], [0.0], [0.0], [0.0]])
+        self.coefficients = np.concatenate([rows, end], axis=1)
 
     def __call__(self, positions: FloatArray) -> FloatArray:
         """Return the function at `positions` (1-d; NaN gives NaN; beyond the grid is our bug)."""
@@ -50,7 +54,7 @@ class HermitePieces:
     def slope(self, positions: FloatArray) -> FloatArray:
         """Return the derivative of the pieces at `positions` (1-d)."""
         piece, fraction = self.locate(positions)
-        columns = self.coefficients[:, piece]
+        columns = np.take(self.coefficients, piece, axis=1, mode="clip")
         result: FloatArray = 5.0 * columns[5]
         for power in (4, 3, 2, 1):
             result *= fraction
@@ -67,7 +71,6 @@ class HermitePieces:
         )
         with np.errstate(invalid="ignore"):
             piece = fraction.astype(np.intp)
-        np.clip(piece, 0, self.pieces - 1, out=piece)
         fraction -= piece
         return piece, fraction
 

@@ -19,6 +19,7 @@ from epochconv.measure import Measure
 from epochconv.moment import Moment
 
 _MOST_STEPS = 80
+_ROUNDING = 1e-12
 _EPSILON = float(np.finfo(np.float64).eps)
 
 
@@ -31,7 +32,7 @@ def roots(measure: Measure, values: FloatArray, history: ExpansionHistory) -> li
         return [measure.moment_of(values, history)]
     if measure.rescaled_from is not None:
         base, _, back = measure.rescaled_from
-        return roots(base, back(values), history)
+        return roots(base, np.clip(back(values), *range_of(base, history)), history)
     return [
         Moment(x=_solve(branch, measure, values, history)) for branch in _branches(measure, history)
     ]
@@ -108,8 +109,10 @@ def _solve_block(
     assert measure.slope_at is not None
     sign = 1.0 if branch.rises else -1.0
     climb, wanted = sign * branch.values, sign * values
-    outside = ~((wanted >= climb[0]) & (wanted <= climb[-1]))
-    wanted = np.where(outside, climb[0], wanted)
+    # An end belongs to the branch also where rounding puts a value an ulp beyond it.
+    clipped = np.clip(wanted, climb[0], climb[-1])
+    outside = ~(np.abs(wanted - clipped) <= _ROUNDING * np.abs(clipped))
+    wanted = np.where(outside, climb[0], clipped)
     piece = np.clip(np.searchsorted(climb, wanted, side="right") - 1, 0, len(climb) - 2)
     low, high = branch.knots[piece], branch.knots[piece + 1]
     rise = climb[piece + 1] - climb[piece]

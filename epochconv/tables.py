@@ -66,12 +66,16 @@ class Tables:
             piece, fraction = self._time.locate(x[block])
             smaller = np.empty_like(fraction)
             self._time.evaluate(piece, fraction, smaller)
-            early = piece >= self._first_early_piece
-            rest = self.age_today - smaller
+            # Products with 0 and 1, as exact as a choice and twice as fast where it is random.
+            early = (piece >= self._first_early_piece).astype(np.float64)
+            late = 1.0 - early
+            rest = np.subtract(self.age_today, smaller, out=fraction)
             if lookback is not None:
-                lookback[block] = np.where(early, rest, smaller)
+                np.multiply(late, smaller, out=lookback[block])
+                lookback[block] += early * rest
             if age is not None:
-                age[block] = np.where(early, smaller, rest)
+                np.multiply(early, smaller, out=age[block])
+                age[block] += late * rest
 
     def distance(self, x: FloatArray) -> FloatArray:
         """Return the comoving distance along the line of sight (Hubble lengths) at x, (n,)."""
@@ -98,7 +102,8 @@ class Tables:
 
     def x_of_distance(self, distance: FloatArray) -> FloatArray:
         """Return x at comoving distances of shape (n,), from 0 to `distance_highest`."""
-        return self._x_of_distance(self._depth_of_distance(distance))
+        x = self._x_of_distance(self._depth_of_distance(distance))
+        return np.minimum(x, HIGHEST_X, out=x)
 
     def _depth_of_distance(self, distance: FloatArray) -> FloatArray:
         """Return u = ln((1 + d)/(1 - d/horizon)): linear near 0, nearly linear in x far out."""
@@ -230,7 +235,10 @@ def _inverse_pieces(knots: FloatArray, depth_law: DepthLaw, bend_law: BendLaw) -
             depth, slope, _ = depth_law(x)
             correction = (grid - depth) * slope
             x = np.clip(x + correction, 0.0, HIGHEST_X)
-            previous, moved = moved, float(np.max(np.abs(correction[: panels // 2])))
+            # Relative to the depth, since near today x must be right relative to itself; the far
+            # half is left out, where rounding of the depth alone moves x.
+            moves = np.abs(correction[1 : panels // 2]) / grid[1 : panels // 2]
+            previous, moved = moved, float(np.max(moves))
             if moved >= 0.5 * previous:
                 break
         slope = depth_law(x)[1]
