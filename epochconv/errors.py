@@ -2,9 +2,17 @@
 
 from __future__ import annotations
 
+from typing import Any
+
 
 class EpochconvError(Exception):
-    """Root of all errors raised on purpose; each text speaks to the person at the keyboard."""
+    """Root of all errors raised on purpose; each text speaks to the person at the keyboard.
+
+    All of them can be copied and pickled, so that they come back from worker processes.
+    """
+
+    def __reduce__(self) -> tuple[Any, ...]:
+        return _restored, (type(self), self.args, vars(self))
 
 
 class ArgumentError(EpochconvError, ValueError):
@@ -61,3 +69,10 @@ class TwoAnswersError(ArgumentError):
         self.measure = measure
         self.value = value
         self.redshifts = redshifts
+
+
+def _restored(kind: type[EpochconvError], args: tuple[Any, ...], parts: dict[str, Any]) -> Any:
+    """Make an error again without its __init__, which asks for the parts by keyword."""
+    error = kind.__new__(kind, *args)
+    vars(error).update(parts)
+    return error
