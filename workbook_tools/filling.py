@@ -15,6 +15,7 @@ from workbook_tools import sheet_edits
 from workbook_tools.archive import Archive
 from workbook_tools.dependents import Dependents, readers_of
 from workbook_tools.errors import Refusal, UsageError
+from workbook_tools.headings import same_heading
 from workbook_tools.open_workbook import OpenWorkbook
 from workbook_tools.parts import recalculate_on_load
 from workbook_tools.placement import prepare
@@ -153,17 +154,26 @@ def _plans(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetPlan], l
     """Plan every sheet that is meant; return the plans that fill something, and notes."""
     plans: list[SheetPlan] = []
     notes: list[str] = []
+    headings: list[str] = []
     for sheet in workbook.sheets(request.sheet):
         reading = workbook.reading(sheet, request.header_row)
         if request.source is None and not reading.headings:
             continue
         plan = plan_sheet(reading, request, workbook.styles)
         notes += reading.lacking_units()
-        if plan.columns or plan.left:
+        headings += [heading.text for heading in reading.headings.values()]
+        if plan.columns or plan.left or plan.notes:
             plans.append(plan)
             workbook.hold(sheet.part, reading.scan.xml)
-    if request.add and request.sheet is None and len(plans) > 1:
-        listed = ", ".join(repr(plan.reading.sheet.name) for plan in plans)
+    for text in request.only:
+        if not any(same_heading(text, heading) for heading in headings):
+            raise UsageError(
+                f"--only {text!r} is no heading of {workbook.label} that can be filled; name one as"
+                " it stands, such as 'Age [Gyr]'"
+            )
+    several = [plan.reading.sheet.name for plan in plans if plan.columns or plan.left]
+    if request.add and request.sheet is None and len(several) > 1:
+        listed = ", ".join(map(repr, several))
         raise UsageError(f"--add fits several sheets ({listed}); name one with --sheet")
     if request.source is not None and not plans:
         raise UsageError(

@@ -13,21 +13,21 @@ import numpy as np
 from numpy.typing import NDArray
 
 from workbook_tools import agreement, source_choice
-from workbook_tools.answers import Moments
+from workbook_tools.answers import FloatArray, Moments
 from workbook_tools.cell_address import Range, column_letters
-from workbook_tools.column_widths import column_style, hidden_columns
+from workbook_tools.cell_looks import CellLooks
+from workbook_tools.column_widths import hidden_columns
 from workbook_tools.errors import Refusal, UsageError
 from workbook_tools.headings import Heading, same_heading
-from workbook_tools.number_formats import format_for, significant_digits
+from workbook_tools.number_formats import format_for
 from workbook_tools.request import Request
 from workbook_tools.right_edge import free_columns, right_edge
 from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_reading import SheetReading
-from workbook_tools.styles import GENERAL, StyleSheet
+from workbook_tools.styles import StyleSheet
 from workbook_tools.tables import Table, free_names
-from workbook_tools.typed_cells import EMPTY, LEFT, NUMBER, ColumnCells
+from workbook_tools.typed_cells import EMPTY, LEFT, NUMBER, SUMS_UP, WHITE, ColumnCells
 
-IndexArray = NDArray[np.intp]
 BoolArray = NDArray[np.bool_]
 
 
@@ -128,9 +128,11 @@ def _has_blank_target(reading: SheetReading, sources: list[int], request: Reques
     columns = reading.columns(list(reading.headings))
     filled = [one for one in columns if one.column in sources]
     return any(
-        target.is_blank(p) and any(one.kinds[p] == NUMBER for one in filled if one is not target)
+        target.is_blank(position) and one.kinds[position] == NUMBER
         for target in columns
-        for p in range(len(target.kinds))
+        for one in filled
+        if not reading.headings[one.column].same_kind(reading.headings[target.column])
+        for position in range(len(target.kinds))
     )
 
 
@@ -139,10 +141,12 @@ def _targets(
 ) -> tuple[list[tuple[int, Heading]], list[Heading]]:
     """Return the existing columns to fill and the headings of those to append."""
     reading = plan.reading
-    added = []
+    added: list[Heading] = []
     asked: dict[int, Heading] = {}
     for text in request.add:
         heading = source_choice.known_heading(text, "--add")
+        if any(same_heading(one.text, text) for one in added):
+            continue
         twin = next((c for c, t in reading.texts.items() if same_heading(t, text)), None)
         if twin is not None:
             plan.notes.append(
@@ -177,11 +181,10 @@ class _Filler:
         self.plan = plan
         self.reading = plan.reading
         self.request = request
-        self.styles = styles
         self.source = source
         self.heading = heading
         self.moments = moments
-        self.digits = _typical_digits(source)
+        self.looks = CellLooks(plan.reading, styles, source)
         # Positions in the rows of the log at which a blank cell was asked for.
         self.wanted = np.zeros(len(source.kinds), dtype=bool)
 
@@ -189,6 +192,7 @@ class _Filler:
         """Plan the blanks of columns that are there."""
         for target in self.reading.columns([column for column, _ in targets]):
             heading = dict(targets)[target.column]
+            self._report_kept(target)
             blank = np.frombuffer(target.kinds, dtype=np.uint8) <= EMPTY
             if not np.any(blank & (np.frombuffer(self.source.kinds, dtype=np.uint8) >= NUMBER)):
                 continue
@@ -198,16 +202,17 @@ class _Filler:
                     self.moments,
                     target,
                     heading,
-                    self._code,
+                    self.looks.code,
                     lambda p, column=target.column: self.reading.where(p, column),  # type: ignore[misc]
                 )
             self._fill(heading, target.column, blank, target)
 
     def append(self, headings: Sequence[Heading]) -> None:
-        """Plan new columns at the right edge of the data."""
+        """Plan new columns at the right edge of the data, where there is a value for any cell."""
         if not headings:
             return
-        if not self.source.count(NUMBER) and not self.source.count(LEFT):
+        if np.all(np.isnan(self.moments.moment.x)):
+            self.wanted[:] = True
             return
         first, table, note = right_edge(self.reading, self.source.column, len(headings))
         self.plan.notes += [note] if note else []
@@ -222,10 +227,9 @@ class _Filler:
             column = first + offset
             cells = self._fill(heading, column, everywhere, None)
             if self.reading.header_row is not None:
-                style = self._heading_style(first - 1)
+                style = self.looks.of_heading(first - 1)
                 cells.heading = (self.reading.header_row, name, style)
-            wraps = self.styles is not None and self.styles.wraps(style)
-            cells.width = float(min(max(len(name) + 3, 11), 15 if wraps else 40))
+            cells.width = float(min(max(len(name) + 3, 11), 15 if self.looks.wraps(style) else 40))
             if column in hidden:
                 self.plan.notes.append(
                     f"column {column_letters(column)} was hidden and is shown, as it is new"
@@ -241,19 +245,38 @@ class _Filler:
                 continue
             address = self.reading.where(position, source.column)
             reason = source.reasons.get(position) or self.moments.reasons[position]
-            if reason.startswith("a formula over"):
+            if reason == SUMS_UP:
                 self.plan.passed_over.append(address)
             else:
                 self.plan.left.append((address, reason))
-        if source.from_formulas:
-            self.plan.notes.append(
-                f"{source.from_formulas} numbers of column {column_letters(source.column)} are"
-                " results of formulas, as last stored"
-            )
-        if source.from_text:
-            self.plan.notes.append(
-                f"{source.from_text} numbers of column {column_letters(source.column)} were text"
-            )
+        if any(one.rows for one in self.plan.cells):
+            self._note_origins()
+
+    def _note_origins(self) -> None:
+        source = self.source
+        letters = column_letters(source.column)
+        for count, one, several in (
+            (
+                source.from_formulas,
+                "is the result of a formula, as last stored",
+                "are results of formulas, as last stored",
+            ),
+            (source.from_text, "was text", "were text"),
+        ):
+            if count:
+                numbers = f"{count} numbers" if count > 1 else "1 number"
+                self.plan.notes.append(
+                    f"{numbers} of column {letters} {several if count > 1 else one}"
+                )
+
+    def _report_kept(self, target: ColumnCells) -> None:
+        """List the cells that hold something else than a number where a value would belong."""
+        kinds = np.frombuffer(target.kinds, dtype=np.uint8)
+        kept = ((kinds == WHITE) | (kinds == LEFT)) & ~np.isnan(self.moments.moment.x)
+        for position in np.flatnonzero(kept).tolist():
+            shown = target.texts.get(position) or target.reasons.get(position, "white space")
+            address = self.reading.where(position, target.column)
+            self.plan.left.append((address, f"not overwritten: {shown}"))
 
     def _fill(
         self,
@@ -264,6 +287,7 @@ class _Filler:
     ) -> NewCells:
         """Add a column's new cells to the plan; `blank` tells where there is room for one."""
         values, missing = self.moments.column(heading.measure, heading.unit)
+        values = _storable(values)
         self.wanted |= blank
         positions = np.flatnonzero(blank & ~np.isnan(values))
         cells = NewCells(column)
@@ -271,7 +295,7 @@ class _Filler:
         start = self.reading.rows.start
         cells.rows = array("q", np.array(numbers)[start + positions].tobytes())
         cells.numbers = array("d", values[positions].tobytes())
-        cells.styles = self._styles_of(column, positions, cells.numbers, target)
+        cells.styles = self.looks.of_numbers(column, positions, cells.numbers, target)
         self.plan.cells.append(cells)
         for position, reason in missing.items():
             if blank[position]:
@@ -281,60 +305,6 @@ class _Filler:
         )
         self.plan.columns.append(filled)
         return cells
-
-    def _styles_of(
-        self,
-        column: int,
-        positions: IndexArray,
-        values: Sequence[float],
-        target: ColumnCells | None,
-    ) -> array[int]:
-        """Return the style of each new cell: that of its neighbours, with a fitting format."""
-        if self.styles is None:
-            return array("q", bytes(8 * len(positions)))
-        code = format_for(values, self.digits)
-        models = np.maximum(np.array(self.source.styles)[positions], 0)
-        keeps = np.zeros(len(positions), dtype=bool)
-        if target is not None:
-            own, code = self._own_look(column, target, code)
-            own = own[positions]
-            keeps = own > 0
-            models = np.where(keeps, own, models)
-        known: dict[tuple[int, bool], int] = {}
-        for model, keep in set(zip(models.tolist(), keeps.tolist(), strict=True)):
-            named = keep and self._code(model) != GENERAL
-            known[model, keep] = model if named else self.styles.with_format(model, code)
-        pairs = zip(models.tolist(), keeps.tolist(), strict=True)
-        return array("q", [known[pair] for pair in pairs])
-
-    def _own_look(
-        self, column: int, target: ColumnCells, code: str
-    ) -> tuple[NDArray[np.int64], str]:
-        """Return the style that an existing column gives each cell (0: none), and its format.
-
-        An empty cell keeps its own style, a blank below filled ones takes that of the last of
-        them, and the style of the whole column comes next. Without any of these a cell will look
-        like its row's source. The format is that of the column's other cells, if they have one.
-        """
-        own = np.maximum(np.array(target.styles), 0)
-        typed = np.flatnonzero(np.frombuffer(target.kinds, dtype=np.uint8) == NUMBER)
-        fallback = column_style(self.reading.scan, column)
-        if len(typed):
-            fallback = int(own[typed[-1]])
-        used = [self._code(int(one)) for one in np.unique(own[own > 0])]
-        used += [self._code(fallback)] if fallback else []
-        named = [one for one in used if one != GENERAL]
-        return np.where(own > 0, own, fallback), named[-1] if named else code
-
-    def _code(self, style: int) -> str:
-        return GENERAL if self.styles is None else self.styles.format_code(max(style, 0))
-
-    def _heading_style(self, column: int) -> int:
-        """Return the style of the heading to the left of a new column."""
-        assert self.reading.header_index is not None
-        cells = self.reading.scan.cells(self.reading.header_index)
-        styles = [c.style for c in cells if c.column <= column and c.column in self.reading.texts]
-        return styles[-1] if styles else 0
 
     def _refuse_blocked(self, column: int) -> None:
         scan, rows = self.reading.scan, self.reading.rows
@@ -348,14 +318,9 @@ class _Filler:
                 )
 
 
-def _typical_digits(source: ColumnCells) -> int:
-    """Return the median number of significant digits among a column's first thousand cells."""
-    digits = sorted(
-        significant_digits(source.numbers[p])
-        for p, kind in enumerate(source.kinds[:1000])
-        if kind == NUMBER
-    )
-    return digits[len(digits) // 2] if digits else 1
+def _storable(values: FloatArray) -> FloatArray:
+    """Return numbers as spreadsheet programs know them: no -0 and nothing below normal doubles."""
+    return np.where(np.abs(values) < np.finfo(np.float64).tiny, 0.0, values)
 
 
 def plan_columns(
@@ -368,6 +333,7 @@ def plan_columns(
 
     Raises:
         Refusal: there are no free columns at the right edge.
+        UsageError: a number is infinite or not a number, which no cell can hold.
     """
     plan = SheetPlan(reading)
     last_row = first_row + max(len(values) for values in columns.values()) - 1
@@ -375,7 +341,9 @@ def plan_columns(
     first = free_columns(reading, top, last_row, len(columns))
     for column, (text, values) in enumerate(columns.items(), start=first):
         kept = [(first_row + i, v) for i, v in enumerate(values) if v is not None]
-        numbers = [value for _, value in kept]
+        numbers = _storable(np.array([value for _, value in kept], dtype=np.float64)).tolist()
+        if not np.all(np.isfinite(numbers)):
+            raise UsageError(f"column {text!r} holds a number that no cell can hold; leave it out")
         style = 0 if styles is None else styles.with_format(0, format_for(numbers, 1))
         plan.cells.append(
             NewCells(

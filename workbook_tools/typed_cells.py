@@ -30,6 +30,7 @@ _RANGE = re.compile(r"\$?[A-Z]{1,3}\$?([0-9]{1,7}):\$?[A-Z]{1,3}\$?([0-9]{1,7})"
 _MOVING_ROW = re.compile(r"(?<![\w.$])\$?[A-Z]{1,3}([0-9]{1,7})(?![\w.(\[])", re.IGNORECASE)
 _THIS_ROW = re.compile(r"\[\[?#This Row\]", re.IGNORECASE)
 
+SUMS_UP = "a formula over other cells, not a row of the log"
 _DATE = "a date, not a number; what was typed is lost"
 
 TextOf = Callable[[int], str]
@@ -47,7 +48,7 @@ class ColumnCells:
         numbers: the value of each NUMBER cell; 0 elsewhere.
         styles: the format of each cell; -1 where there is no element.
         reasons: why a LEFT cell is left, by position.
-        texts: what a LEFT cell shows, by position.
+        texts: what a LEFT cell shows, by position, in one line of at most 60 signs.
         from_text, from_formulas: how many numbers were text, or results of formulas.
     """
 
@@ -188,11 +189,11 @@ class _ColumnReader:
         cells.kinds[position] = LEFT
         cells.styles[position] = style
         cells.reasons[position] = reason
-        cells.texts[position] = text
+        cells.texts[position] = _shortened(text)
 
     def _number_or_reason(self, cell: CellSpan, formula: str | None, text: str) -> float | str:
         if formula is not None and _sums_up_rows(formula):
-            return "a formula over other cells, not a row of the log"
+            return SUMS_UP
         if not text.strip():
             return "a formula without a stored result; recalculate and save the workbook first"
         if cell.type == "b":
