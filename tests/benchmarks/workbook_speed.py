@@ -1,7 +1,7 @@
 """Time and memory of a large fill, against a load-assign-save with openpyxl and against the floor.
 
 A log of 100,000 rows and 12 columns (6 of text, 6 of numbers) gains six columns. Run it with
-`python tests/benchmarks/workbook_speed.py [runs]`; every ratio comes from this one run. Each
+`python -m tests.benchmarks.workbook_speed [runs]`; every ratio comes from this one run. Each
 contestant works in a process of its own, in turn, started from one that stays small, since a
 process counts its parent's memory as its own peak.
 """
