@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import math
+
 import numpy as np
 from numpy.typing import NDArray
 
@@ -89,7 +91,9 @@ def _why_outside(
     if value < low:
         if measure.unit == "" and measure.name == "redshift":
             return f"a negative redshift {measure.below}"
-        limit = with_unit(number_text(low), measure.unit)
-        return f"{measure.name} {measure.below} ({limit} under {label_of(history)})"
-    limit = with_unit(number_text(high), measure.unit)
-    return f"{measure.name} {measure.above} ({limit} under {label_of(history)})"
+        words, limit = f"{measure.name} {measure.below}", low
+    else:
+        words, limit = f"{measure.name} {measure.above}", high
+    if limit == 0.0 or not math.isfinite(limit):
+        return words
+    return f"{words} ({with_unit(number_text(limit), measure.unit)} under {label_of(history)})"

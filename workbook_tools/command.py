@@ -119,6 +119,10 @@ def _fill(options: argparse.Namespace) -> int:
     from workbook_tools.filling import fill
     from workbook_tools.report import json_report, text_report
 
+    if options.report is not None:
+        fault = _fault_of_report(options.report, options.file)
+        if fault is not None:
+            return _complain(fault, 2)
     try:
         result = fill(
             options.file,
@@ -142,15 +146,26 @@ def _fill(options: argparse.Namespace) -> int:
     if options.report is not None:
         text = json.dumps(json_report(result), ensure_ascii=False, allow_nan=False, indent=1)
         try:
-            options.report.write_text(text + "\n", encoding="utf-8")
+            # a file name that is no text is written as JSON escapes it
+            options.report.write_text(text + "\n", encoding="utf-8", errors="backslashreplace")
         except OSError as error:
             reason = error.strerror or "unknown"
-            print(
-                f"epochbook: the report {options.report} was not written ({reason})",
-                file=sys.stderr,
-            )
-            return 1
+            return _complain(f"the report {options.report} was not written ({reason})", 1)
     return 3 if result.left else 0
+
+
+def _fault_of_report(report: Path, workbook: Path) -> str | None:
+    """Return why a report cannot go there, before anything is filled; None where it can."""
+    if report.suffix.lower() != ".json":
+        return f"--report {report}: the report is JSON, so give it a name that ends in .json"
+    try:
+        if not report.parent.is_dir():
+            return f"there is no folder {report.parent} for --report; make it or choose another"
+        if report.exists() and workbook.exists() and report.samefile(workbook):
+            return f"--report names the workbook itself ({report}); choose another name"
+    except OSError as error:
+        return f"--report {report} cannot be reached ({error.strerror}); choose another name"
+    return None
 
 
 def _complain(error: Exception | str, code: int) -> int:

@@ -7,7 +7,7 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import Self
 
-from workbook_tools.errors import Refusal
+from workbook_tools.errors import Refusal, UsageError
 from workbook_tools.file_system import REAL_FILES, FileSystem
 from workbook_tools.owner_files import refuse_open
 
@@ -68,6 +68,7 @@ def prepare(
     Raises:
         Refusal: no such file, a folder, open in another program, read-only, a folder without
             permission; or the output exists already, or its folder does not.
+        UsageError: the output's name does not end as that of the workbook does.
     """
     try:
         source = files.resolved(path)
@@ -83,6 +84,11 @@ def prepare(
                     f"{path.name} is read-only; make it writable, or name a new file with --output."
                 )
         else:
+            if output.suffix.lower() != path.suffix.lower():
+                raise UsageError(
+                    f"--output {output}: the result is a workbook of the same kind as {path.name},"
+                    f" so give it a name that ends in {path.suffix or 'nothing'} too"
+                )
             destination = _free_output(output, source, files)
         if not files.is_writable(destination.parent):
             raise no_permission(destination.parent)

@@ -12,6 +12,7 @@ from workbook_tools.filling import FillResult
 from workbook_tools.plan import FilledColumn, SheetPlan
 
 _FIRST_CELLS = 3
+_FIRST_REASONS = 12
 
 
 def text_report(result: FillResult) -> str:
@@ -72,8 +73,15 @@ def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
     cells: dict[str, list[str]] = {}
     for cell, reason in plan.left:
         cells.setdefault(reason, []).append(cell)
-    for reason, where in sorted(cells.items(), key=lambda item: -len(item[1])):
+    by_count = sorted(cells.items(), key=lambda item: -len(item[1]))
+    for reason, where in by_count[:_FIRST_REASONS]:
         lines.append(f"  left {len(where)}: {reason} ({_first(where)})")
+    further = by_count[_FIRST_REASONS:]
+    if further:
+        count = sum(len(where) for _, where in further)
+        lines.append(
+            f"  left {count}: for {len(further)} further reasons; --report FILE.json lists all"
+        )
     if plan.passed_over:
         lines.append(
             f"  passed over {len(plan.passed_over)}: formulas over other cells, no rows of the log"
