@@ -14,7 +14,13 @@ from xml.parsers import expat
 
 from workbook_tools.errors import Refusal
 from workbook_tools.hex_escapes import decoded
-from workbook_tools.xml_offsets import check_well_formed, qualified, root_name, unescape
+from workbook_tools.xml_offsets import (
+    check_well_formed,
+    has_hidden_text,
+    qualified,
+    root_name,
+    unescape,
+)
 
 _PLAIN = re.compile(
     rb"""<[^\s<>"']++>\s*+<(?:[^\s<>"':]+:)?t(?: xml:space="preserve")?>"""
@@ -128,8 +134,7 @@ class _Runs:
 
 
 def _starts(xml: bytes, name: str) -> Iterator[int]:
-    # a comment, a CDATA section or an instruction behind the declaration could hold a false tag
-    if b"<!" not in xml and xml.find(b"<?", len(b"\xef\xbb\xbf") + 1) < 0:
+    if not has_hidden_text(xml):
         pattern = re.compile(b"<%b[\\s/>]" % re.escape(name.encode()))
         return (match.start() for match in pattern.finditer(xml))
     starts: list[int] = []

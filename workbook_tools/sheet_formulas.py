@@ -13,7 +13,7 @@ from typing import NamedTuple
 
 from workbook_tools.cell_address import CellAddress, Range, parse_cell, parse_range
 from workbook_tools.errors import UsageError
-from workbook_tools.xml_offsets import escape_text, qualified, root_name, unescape
+from workbook_tools.xml_offsets import escape_text, has_hidden_text, qualified, root_name, unescape
 
 _ATTRIBUTE = re.compile(rb"""\s([^\s=<>"'/]+)\s*=\s*(?:"([^"]*)"|'([^']*)')""")
 _HIDDEN = re.compile(rb"<!--.*?-->|<\?.*?\?>|<!\[CDATA\[(.*?)\]\]>", re.DOTALL)
@@ -203,7 +203,7 @@ def _counted_addresses(xml: bytes, row: bytes, cell: bytes) -> dict[int, CellAdd
 
 def _without_hidden(xml: bytes) -> bytes:
     """Return the sheet without comments and instructions, its CDATA sections as plain text."""
-    if b"<!" not in xml and xml.find(b"<?", 4) < 0:
+    if not has_hidden_text(xml):
         return xml
     return _HIDDEN.sub(
         lambda match: escape_text((match[1] or b"").decode("utf-8", "replace")).encode(), xml

@@ -144,6 +144,12 @@ def root_name(xml: bytes) -> tuple[str, str]:
     return (match[1] or b"").decode(), match[2].decode()
 
 
+def has_hidden_text(xml: bytes) -> bool:
+    """Tell whether comments, CDATA sections or instructions could make a plain search go wrong."""
+    declarations = xml[:64].count(b"<?xml ")
+    return b"<!" in xml or xml.count(b"<?") > declarations
+
+
 def set_attribute(
     element: Element, name: str, value: str, kind: EditKind = EditKind.ATTRIBUTE_CHANGED
 ) -> Edit:

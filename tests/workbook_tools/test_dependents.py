@@ -13,6 +13,7 @@ from openpyxl.formula.tokenizer import Token, Tokenizer
 
 from tests.workbook_tools.corpus import corpus_paths, needs_corpus
 from tests.workbook_tools.loose_parts import LooseParts
+from workbook_tools import dependents
 from workbook_tools.archive import Archive
 from workbook_tools.cell_address import Range, parse_range
 from workbook_tools.dependents import Dependents, readers_of
@@ -98,6 +99,12 @@ def test_nothing_at_all_is_false() -> None:
     assert not found
 
 
+def test_any_kind_of_reader_counts() -> None:
+    assert Dependents(cells={"Log": ("A1",)})
+    assert Dependents(names=("ages",))
+    assert Dependents(charts={"Plots": 1})
+
+
 def test_a_shared_formula_is_named_with_all_its_cells() -> None:
     package = log_book()
     rows = "".join(
@@ -128,6 +135,12 @@ def test_a_long_chain_of_formulas_is_followed_to_its_end(upwards: bool) -> None:
     )
     start = "A1000" if upwards else "A1"
     assert readers(package, start, sheet="Apart").cells["Apart"] == ("A2:A999", "B2:B999")
+
+
+def test_a_chain_that_will_not_end_counts_as_reading(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr(dependents, "_MAX_ROUNDS", 1)
+    found = readers(log_book(), FILLED)
+    assert found.cells["Log"] == ("F2:F9", "G2:G9", "H2:H9")
 
 
 def test_a_drawing_without_its_charts_is_passed_over() -> None:

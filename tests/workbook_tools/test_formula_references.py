@@ -66,6 +66,7 @@ def test_cells_are_found(formula: str, expected: list[str]) -> None:
             NameUse(None, "ABC1234567"), NameUse(None, "XFE1"), NameUse(None, "A0"),
             NameUse(None, "A1048577"),
         ]),
+        ("SUM(0:3,1:1048577)", [NameUse(None, "0:3"), NameUse(None, "1:1048577")]),
         ("\\a.b?+Ω_m", [NameUse(None, "\\a.b?"), NameUse(None, "Ω_m")]),
     ],
 )  # fmt: skip

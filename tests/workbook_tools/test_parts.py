@@ -123,11 +123,16 @@ def test_styles_and_texts_are_found_by_their_relation() -> None:
     assert (found.styles_part, found.shared_strings_part) == ("xl/look.xml", "texts.xml")
 
 
+def test_a_sheet_number_that_is_none_does_no_harm() -> None:
+    sheets = '<sheets><sheet name="Log" sheetId="one" r:id="rId1"/></sheets>'
+    assert read(inside=sheets).sheets[0].sheet_id == 0
+
+
 def test_names_know_the_sheet_they_are_local_to() -> None:
     names = (
         '<definedNames><definedName name="a" hidden="1">Log!$A$1</definedName>'
         '<definedName name="b" localSheetId="0">"x &amp; y"</definedName>'
-        '<definedName name="c" localSheetId="5">1</definedName></definedNames>'
+        '<definedName name="c" localSheetId="1">1</definedName></definedNames>'
     )
     assert read(inside=SHEETS + names).names == (
         DefinedName("a", "Log!$A$1", None, True),

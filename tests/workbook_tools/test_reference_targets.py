@@ -112,6 +112,9 @@ def test_the_name_of_the_sheet_comes_before_that_of_the_workbook() -> None:
         ("B$3:B3", "C3:C9", "B3:B9"),
         ("A1:A$5", "C3:C9", "A1:A7"),
         ("A1:A5", "C3:D9", "A1:B11"),
+        ("A1:$C1", "C3:E3", "A1:C1"),
+        ("$A1:C1", "C3:E3", "A1:E1"),
+        ("A1:$B1", "C3:F3", "A1:D1"),
         ("B:B", "C3:E9", "B1:D1048576"),
         ("3:3", "C3:E9", "A3:XFD9"),
         ("XFD3", "C3:E9", "XFD3:XFD9"),
@@ -126,6 +129,8 @@ def test_copies_read_what_their_moved_references_reach(
 def test_the_area_of_copies_may_begin_before_the_cell_that_holds_the_formula() -> None:
     found = finder().of_formula("B5", "Log", parse_cell("C5"), parse_range("C3:C9"))
     assert [area.a1 for _, area in found.areas] == ["B3:B9"]
+    found = finder().of_formula("D5:F$7", "Log", parse_cell("E5"), parse_range("C3:E5"))
+    assert [area.a1 for _, area in found.areas] == ["B3:F7"]
 
 
 def test_targets_meet_cells_they_read_and_uncertain_ones_meet_all() -> None:

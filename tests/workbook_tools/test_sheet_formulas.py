@@ -97,6 +97,8 @@ def test_an_array_stands_in_its_whole_area_but_is_not_copied() -> None:
 def test_a_what_if_table_reads_its_inputs_and_what_stands_beside_it() -> None:
     rows = '<row r="3"><c r="C3"><f t="dataTable" ref="C3:D5" dt2D="1" r1="A1" r2="A2"/></c></row>'
     assert found(rows) == [("A1,A2,B2:D5", "C3", "C3:D5")]
+    rows = '<row r="1"><c r="A1"><f t="dataTable" ref="A1:B2" r1="C1"/></c></row>'
+    assert found(rows) == [("C1,A1:B2", "A1", "A1:B2")]
 
 
 def test_cells_without_an_address_are_counted() -> None:
@@ -118,6 +120,8 @@ def test_comments_and_cdata_are_seen_through() -> None:
         "</c></row>"
     )
     assert found(rows) == [("B1<C1", "A1", "A1")]
+    rows = "<?go <c r='Z9'><f>no</f></c>?><row r='1'><c r='A1'><f>B1</f></c></row>"
+    assert found(rows) == [("B1", "A1", "A1")]
 
 
 def test_a_sheet_in_utf16_is_read_too() -> None:

@@ -18,6 +18,7 @@ from workbook_tools.xml_offsets import (
     check_well_formed,
     escape_attribute,
     escape_text,
+    has_hidden_text,
     parse,
     qualified,
     root_name,
@@ -106,11 +107,11 @@ def test_find_looks_only_at_children_in_the_own_namespace() -> None:
 
 def test_descendants_come_in_the_order_of_the_file_from_any_depth() -> None:
     root = parse(
-        b'<a xmlns="u" xmlns:o="v"><b n="1"><b n="2"/></b>'
-        b'<o:b/><o:c><b n="3"/></o:c><b n="4"/></a>',
+        b'<a xmlns="u" xmlns:o="v"><b n="1"><b n="2"/><b n="3"/></b>'
+        b'<o:b/><o:c><b n="4"/></o:c><b n="5"/></a>',
         "p",
     )
-    assert [b.attributes["n"] for b in root.descendants("b")] == ["1", "2", "3", "4"]
+    assert [b.attributes["n"] for b in root.descendants("b")] == list("12345")
     assert list(root.descendants("a")) == []
 
 
@@ -245,6 +246,22 @@ def test_utf8_is_let_in_with_or_without_mark_and_declaration() -> None:
 )
 def test_the_name_of_the_root_is_found_without_parsing(xml: bytes, name: tuple[str, str]) -> None:
     assert root_name(xml) == name
+
+
+@pytest.mark.parametrize(
+    ("xml", "hidden"),
+    [
+        (b"<a/>", False),
+        (b'<?xml version="1.0"?><a/>', False),
+        (b'\xef\xbb\xbf<?xml version="1.0"?><a/>', False),
+        (b"<?go?><a/>", True),
+        (b'<?xml version="1.0"?><?go?><a/>', True),
+        (b"<a><!-- --></a>", True),
+        (b"<a><![CDATA[]]></a>", True),
+    ],
+)
+def test_it_is_known_whether_a_plain_search_could_go_wrong(xml: bytes, hidden: bool) -> None:
+    assert has_hidden_text(xml) is hidden
 
 
 def test_nesting_is_limited() -> None:
