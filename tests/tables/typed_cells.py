@@ -1,0 +1,450 @@
+"""Cells as people type them, and what each must be read as.
+
+Drawn from the project's policy for typed cells and from practice in shared logs, before the reader
+was written; `test_typed_cells.py` holds the reader to it. Where the policy is silent a careful
+observer's judgement decided. Concise errors: JCGM 100 (GUM) 7.2.2 and the SI brochure, from memory;
+the flags ? and : : the documentation standard of astronomical catalogues, column prefix u_; the
+rest: common practice, no source.
+
+`\\u` escapes stand where a sign is invisible or easily taken for another.
+"""
+
+from __future__ import annotations
+
+from epochconv.typed_outcomes import NoValue, Reason, Remark, Typed, Unread
+from epochconv.units import unit_named
+
+Outcome = Typed | NoValue | Unread
+Cells = list[tuple[str, Outcome]]
+
+
+def read(
+    value: float,
+    upper: float | None = None,
+    lower: float | None = None,
+    *remarks: Remark,
+    limit: str = "",
+    unit: str = "",
+) -> Typed:
+    """A value that is read; one error stands for both sides, a unit brings its remark."""
+    marks = {*remarks, *([Remark.UNIT] if unit else [])}
+    return Typed(
+        value,
+        upper,
+        upper if lower is None else lower,
+        limit,
+        unit_named(unit) if unit else None,
+        tuple(mark for mark in Remark if mark in marks),
+    )
+
+
+def bare(value: float, *remarks: Remark, limit: str = "", unit: str = "") -> Typed:
+    """A value without an error."""
+    return read(value, None, None, *remarks, limit=limit, unit=unit)
+
+
+def uneven(value: float, upper: float, lower: float, *remarks: Remark, unit: str = "") -> Typed:
+    """A value with an asymmetric error."""
+    return read(value, upper, lower, Remark.ASYMMETRIC, *remarks, unit=unit)
+
+
+def left(*cells: str, why: Reason) -> Cells:
+    """Cells that are left for one reason."""
+    return [(cell, Unread(why)) for cell in cells]
+
+
+NUMBERS: Cells = [
+    ("2.345", bare(2.345)),
+    ("0", bare(0.0)),
+    ("7", bare(7.0)),
+    ("007", bare(7.0)),
+    (".5", bare(0.5)),
+    ("5.", bare(5.0)),
+    ("+5.5", bare(5.5)),
+    ("-0.0003", bare(-0.0003)),
+    ("\u22121.3", bare(-1.3)),
+    ("\u20101.3", bare(-1.3)),
+    ("\u20111.3", bare(-1.3)),
+    ("\u20121.3", bare(-1.3)),
+    ("\u20131.3", bare(-1.3)),
+    ("  2.31 ", bare(2.31)),
+    ("\u00a02.31\u2009", bare(2.31)),
+    ("\ufeff2.31\u200b", bare(2.31)),
+    ("\u202f2.31\n", bare(2.31)),
+    ("\uff12\uff0e\uff13\uff11", bare(2.31)),
+    ("\uff0d\uff11\uff0e\uff13", bare(-1.3)),
+    ("'2.31", bare(2.31, Remark.TEXT_MARK)),
+    ("-99", bare(-99.0)),
+    ("-9.99", bare(-9.99)),
+    ("99.99", bare(99.99)),
+    ("9999", bare(9999.0)),
+    ("0.3333333333333333", bare(0.3333333333333333)),
+    # Digit groups.
+    ("1,234.5", bare(1234.5)),
+    ("12,345,678.9", bare(12345678.9)),
+    ("1,234,567", bare(1234567.0, Remark.DIGIT_GROUPS)),
+    ("1 234.5", bare(1234.5, Remark.DIGIT_GROUPS)),
+    ("12 345", bare(12345.0, Remark.DIGIT_GROUPS)),
+    ("1'234.5", bare(1234.5, Remark.DIGIT_GROUPS)),
+    ("1\u2019234.5", bare(1234.5, Remark.DIGIT_GROUPS)),
+    ("1\u00a0234\u00a0567.25", bare(1234567.25, Remark.DIGIT_GROUPS)),
+    ("1\u2009234", bare(1234.0, Remark.DIGIT_GROUPS)),
+    ("1\u202f234", bare(1234.0, Remark.DIGIT_GROUPS)),
+    ("\u22121\u2009234.5", bare(-1234.5, Remark.DIGIT_GROUPS)),
+    # Powers of ten.
+    ("1.3E3", bare(1300.0)),
+    ("1.3e3", bare(1300.0)),
+    ("1.3e+03", bare(1300.0)),
+    ("1.3e\u22125", bare(1.3e-5)),
+    ("1.3×10³", bare(1300.0)),
+    ("1.3 × 10³", bare(1300.0)),
+    ("1.3×10⁻³", bare(0.0013)),
+    ("1.3x10^3", bare(1300.0)),
+    ("1.3X10^3", bare(1300.0)),
+    ("1.3 x 10^-3", bare(0.0013)),
+    ("1.3 × 10^{3}", bare(1300.0)),
+    ("1.3*10^3", bare(1300.0)),
+    ("1.3*10**3", bare(1300.0)),
+    ("1.3·10³", bare(1300.0)),
+    ("1.3\u22c510^\u22123", bare(0.0013)),
+    ("10^4", bare(1e4)),
+    ("$1.3 \\times 10^{3}$", bare(1300.0)),
+    ("$2.31$", bare(2.31)),
+    # Percent.
+    ("5%", bare(0.05, Remark.PERCENT)),
+    ("12.5 %", bare(0.125, Remark.PERCENT)),
+]
+
+CONCISE: Cells = [
+    ("2.345(12)", read(2.345, 0.012)),
+    ("2.3(2)", read(2.3, 0.2)),
+    ("2.30(12)", read(2.30, 0.12)),
+    ("0.0487(5)", read(0.0487, 0.0005)),
+    ("\u22120.0003(1)", read(-0.0003, 0.0001)),
+    ("2.345(12)e3", read(2345.0, 12.0)),
+    ("2.345(12)×10³", read(2345.0, 12.0)),
+    ("2.345(12) x 10^-3", read(0.002345, 0.000012)),
+    ("13.80(2) Gyr", read(13.80, 0.02, unit="Gyr")),
+    ("13.80(2)Gyr", read(13.80, 0.02, unit="Gyr")),
+    ("1 234.5(3)", read(1234.5, 0.3, None, Remark.DIGIT_GROUPS)),
+    ("2345(12)", read(2345.0, 12.0, None, Remark.ERROR_OR_NOTE)),
+    ("7(1)", read(7.0, 1.0, None, Remark.ERROR_OR_NOTE)),
+    ("2.34(1.2)", read(2.34, 1.2, None, Remark.ERROR_IN_BRACKETS)),
+    ("2.34(0.02)", read(2.34, 0.02, None, Remark.ERROR_IN_BRACKETS)),
+    ("2.345(12)?", read(2.345, 0.012, None, Remark.UNCERTAIN)),
+    ("~2.3(2)", read(2.3, 0.2, None, Remark.APPROXIMATE)),
+]
+
+EVEN_ERRORS: Cells = [
+    ("2.34±0.02", read(2.34, 0.02)),
+    ("2.34 ± 0.02", read(2.34, 0.02)),
+    ("2.34 +/- 0.02", read(2.34, 0.02)),
+    ("2.34+/-0.02", read(2.34, 0.02)),
+    ("2.34 +/\u2212 0.02", read(2.34, 0.02)),
+    ("2.34 +- .02", read(2.34, 0.02)),
+    ("2.34+-.02", read(2.34, 0.02)),
+    ("2.34 \\pm 0.02", read(2.34, 0.02)),
+    ("$2.34 \\pm 0.02$", read(2.34, 0.02)),
+    ("2.34\n±0.02", read(2.34, 0.02)),
+    ("2.34 (±0.02)", read(2.34, 0.02)),
+    ("2.34(±0.02)", read(2.34, 0.02)),
+    ("\u22120.001 ± 0.002", read(-0.001, 0.002)),
+    ("2.34 ± 0", read(2.34, 0.0)),
+    ("(2.34 ± 0.02)e3", read(2340.0, 20.0)),
+    ("(2.34 ± 0.02) × 10³", read(2340.0, 20.0)),
+    ("(2.34 ± 0.02)", read(2.34, 0.02)),
+    ("2.34e3 ± 0.02e3", read(2340.0, 20.0)),
+    ("2.34×10³ ± 20", read(2340.0, 20.0)),
+    ("1.2874 ± 6e-4", read(1.2874, 0.0006, None, Remark.ERROR_POWER)),
+    ("13.2 ± 0.1 Gyr", read(13.2, 0.1, unit="Gyr")),
+    ("13.2±0.1Gyr", read(13.2, 0.1, unit="Gyr")),
+    ("(13.2 ± 0.1) Gyr", read(13.2, 0.1, unit="Gyr")),
+    ("13.2 Gyr ± 0.1 Gyr", read(13.2, 0.1, unit="Gyr")),
+    ("13.2 Gyr ± 0.1", read(13.2, 0.1, unit="Gyr")),
+    ("13.2 Gyr ± 100 Myr", read(13.2, 0.1, unit="Gyr")),
+    ("(4.5 ± 0.2) × 10³ Mpc", read(4500.0, 200.0, unit="Mpc")),
+    ("5% ± 1%", read(0.05, 0.01, None, Remark.PERCENT)),
+    ("(5 ± 1) %", read(0.05, 0.01, None, Remark.PERCENT)),
+    ("2.34 ± 0.02?", read(2.34, 0.02, None, Remark.UNCERTAIN)),
+    ("~2.3 ± 0.2", read(2.3, 0.2, None, Remark.APPROXIMATE)),
+    ("2.34 ± 0.02†", read(2.34, 0.02, None, Remark.FOOTNOTE)),
+    ("2.34 ± 0.02 (1σ)", read(2.34, 0.02, None, Remark.LEVEL)),
+    ("2.34 ± 0.02 (68%)", read(2.34, 0.02, None, Remark.LEVEL)),
+]
+
+UNEVEN_ERRORS: Cells = [
+    ("2.34+0.05-0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34+0.05\u22120.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 +0.05/-0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 +0.05/\u22120.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34+0.05/-0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 +0.05 -0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 + 0.05 - 0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 +0.05, -0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 (+0.05, -0.03)", uneven(2.34, 0.05, 0.03)),
+    ("2.34 (+0.05/-0.03)", uneven(2.34, 0.05, 0.03)),
+    ("2.34 (+0.05 \u22120.03)", uneven(2.34, 0.05, 0.03)),
+    ("2.34(+0.05,-0.03)", uneven(2.34, 0.05, 0.03)),
+    ("2.34 [+0.05, -0.03]", uneven(2.34, 0.05, 0.03)),
+    ("2.34^{+0.05}_{-0.03}", uneven(2.34, 0.05, 0.03)),
+    ("$2.34^{+0.05}_{-0.03}$", uneven(2.34, 0.05, 0.03)),
+    ("2.34_{-0.03}^{+0.05}", uneven(2.34, 0.05, 0.03)),
+    ("2.34^+0.05_-0.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 -0.03 +0.05", uneven(2.34, 0.05, 0.03)),
+    ("2.34-0.03+0.05", uneven(2.34, 0.05, 0.03)),
+    ("2.34 -0.03/+0.05", uneven(2.34, 0.05, 0.03)),
+    ("2.34\n+0.05\n\u22120.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 +.05 -.03", uneven(2.34, 0.05, 0.03)),
+    ("2.34 +0.05/-0.05", read(2.34, 0.05, 0.05)),
+    ("450 +12 -9 Mpc", uneven(450.0, 12.0, 9.0, unit="Mpc")),
+    ("13.2 +0.1/\u22120.2 Gyr", uneven(13.2, 0.1, 0.2, unit="Gyr")),
+    ("13.2 Gyr +0.1/-0.2", uneven(13.2, 0.1, 0.2, unit="Gyr")),
+    ("13.2 Gyr +0.1 Gyr -0.2 Gyr", uneven(13.2, 0.1, 0.2, unit="Gyr")),
+    ("(13.2 +0.1 -0.2) Gyr", uneven(13.2, 0.1, 0.2, unit="Gyr")),
+    ("13.2 (+0.1, -0.2) Gyr", uneven(13.2, 0.1, 0.2, unit="Gyr")),
+    ("13.2^{+0.1}_{-0.2} Gyr", uneven(13.2, 0.1, 0.2, unit="Gyr")),
+    ("(2.34 +0.05/-0.03) × 10³", uneven(2340.0, 50.0, 30.0)),
+    ("(2.34^{+0.05}_{-0.03})e3", uneven(2340.0, 50.0, 30.0)),
+    ("2.34 +0.05/-0", uneven(2.34, 0.05, 0.0)),
+    ("2.34 +0.05/-0.03?", uneven(2.34, 0.05, 0.03, Remark.UNCERTAIN)),
+]
+
+LIMITS: Cells = [
+    (">6", bare(6.0, limit=">")),
+    ("> 6", bare(6.0, limit=">")),
+    ("<0.1", bare(0.1, limit="<")),
+    ("< 0.1", bare(0.1, limit="<")),
+    ("\uff1e6", bare(6.0, limit=">")),
+    ("≥6", bare(6.0, limit="≥")),
+    (">=6", bare(6.0, limit="≥")),
+    (">= 6", bare(6.0, limit="≥")),
+    ("⩾6", bare(6.0, limit="≥")),
+    ("≧ 6", bare(6.0, limit="≥")),
+    ("≤0.1", bare(0.1, limit="≤")),
+    ("<=0.1", bare(0.1, limit="≤")),
+    ("\\leq 0.1", bare(0.1, limit="≤")),
+    ("<~6", bare(6.0, limit="≲")),
+    ("~<6", bare(6.0, limit="≲")),
+    ("< ~6", bare(6.0, limit="≲")),
+    ("≲6", bare(6.0, limit="≲")),
+    (">~6", bare(6.0, limit="≳")),
+    ("~>6", bare(6.0, limit="≳")),
+    ("≳ 6", bare(6.0, limit="≳")),
+    ("$\\gtrsim 6$", bare(6.0, limit="≳")),
+    ("<\u22120.001", bare(-0.001, limit="<")),
+    ("<1.3e3", bare(1300.0, limit="<")),
+    (">13 Gyr", bare(13.0, limit=">", unit="Gyr")),
+    ("< 450 Mpc", bare(450.0, limit="<", unit="Mpc")),
+    ("<5%", bare(0.05, Remark.PERCENT, limit="<")),
+    (">6?", bare(6.0, Remark.UNCERTAIN, limit=">")),
+    (">6*", bare(6.0, Remark.FOOTNOTE, limit=">")),
+    ("> 6.0 (3σ)", bare(6.0, Remark.LEVEL, limit=">")),
+    ("<0.1 (95%)", bare(0.1, Remark.LEVEL, limit="<")),
+    ("<0.1 (95 % CL)", bare(0.1, Remark.LEVEL, limit="<")),
+    ("<0.1 (3 sigma)", bare(0.1, Remark.LEVEL, limit="<")),
+    ("<0.1 (3-sigma)", bare(0.1, Remark.LEVEL, limit="<")),
+]
+
+MARKED: Cells = [
+    ("~7", bare(7.0, Remark.APPROXIMATE)),
+    ("~ 7", bare(7.0, Remark.APPROXIMATE)),
+    ("\u223c7", bare(7.0, Remark.APPROXIMATE)),
+    ("≈7", bare(7.0, Remark.APPROXIMATE)),
+    ("≃ 7.1", bare(7.1, Remark.APPROXIMATE)),
+    ("\\sim 7", bare(7.0, Remark.APPROXIMATE)),
+    ("c. 7", bare(7.0, Remark.APPROXIMATE)),
+    ("c.7", bare(7.0, Remark.APPROXIMATE)),
+    ("ca. 7", bare(7.0, Remark.APPROXIMATE)),
+    ("ca 7", bare(7.0, Remark.APPROXIMATE)),
+    ("circa 7", bare(7.0, Remark.APPROXIMATE)),
+    ("approx. 7", bare(7.0, Remark.APPROXIMATE)),
+    ("7:", bare(7.0, Remark.UNCERTAIN)),
+    ("7?", bare(7.0, Remark.UNCERTAIN)),
+    ("7 ?", bare(7.0, Remark.UNCERTAIN)),
+    ("7??", bare(7.0, Remark.UNCERTAIN)),
+    ("7::", bare(7.0, Remark.UNCERTAIN)),
+    ("7 (?)", bare(7.0, Remark.UNCERTAIN)),
+    ("~7?", bare(7.0, Remark.APPROXIMATE, Remark.UNCERTAIN)),
+    ("2.3*", bare(2.3, Remark.FOOTNOTE)),
+    ("2.3†", bare(2.3, Remark.FOOTNOTE)),
+    ("2.3‡", bare(2.3, Remark.FOOTNOTE)),
+    ("2.3§", bare(2.3, Remark.FOOTNOTE)),
+    ("2.3¶", bare(2.3, Remark.FOOTNOTE)),
+    ("2.3 *", bare(2.3, Remark.FOOTNOTE)),
+    ("2.3**", bare(2.3, Remark.FOOTNOTE)),
+    ("7*", bare(7.0, Remark.FOOTNOTE)),
+    ("2.3¹", bare(2.3, Remark.FOOTNOTE)),
+    ("2.31²", bare(2.31, Remark.FOOTNOTE)),
+    ("2.3*?", bare(2.3, Remark.FOOTNOTE, Remark.UNCERTAIN)),
+]
+
+UNITS: Cells = [
+    ("13.2 Gyr", bare(13.2, unit="Gyr")),
+    ("13.2Gyr", bare(13.2, unit="Gyr")),
+    ("13.2\u00a0Gyr", bare(13.2, unit="Gyr")),
+    ("450 Mpc", bare(450.0, unit="Mpc")),
+    ("1.3e3 Mpc", bare(1300.0, unit="Mpc")),
+    ("1.3×10³ Mpc", bare(1300.0, unit="Mpc")),
+    ("1,234.5 Mpc", bare(1234.5, unit="Mpc")),
+    ("5 100 Mpc", bare(5100.0, Remark.DIGIT_GROUPS, unit="Mpc")),
+    ("27.4 Gly", bare(27.4, unit="Gly")),
+    ("13.2 billion years", bare(13.2, unit="Gyr")),
+    ("13.2 (Gyr)", bare(13.2, unit="Gyr")),
+    ("13.2 [Gyr]", bare(13.2, unit="Gyr")),
+    ("9.3 K", bare(9.3, unit="K")),
+    ("9.3K", bare(9.3, unit="K")),
+    ("44.1 mag", bare(44.1, unit="mag")),
+    ("70 km/s/Mpc", bare(70.0, unit="km/s/Mpc")),
+    ("70 km s^-1 Mpc^-1", bare(70.0, unit="km/s/Mpc")),
+    ("0.07 1/Gyr", bare(0.07, unit="1/Gyr")),
+    ("180 s", bare(180.0, unit="s")),
+    ("~13 Gyr", bare(13.0, Remark.APPROXIMATE, unit="Gyr")),
+    ("13.2 Gyr?", bare(13.2, Remark.UNCERTAIN, unit="Gyr")),
+    ("13.2? Gyr", bare(13.2, Remark.UNCERTAIN, unit="Gyr")),
+    ("13.2 Gyr*", bare(13.2, Remark.FOOTNOTE, unit="Gyr")),
+    ("10^4 K", bare(1e4, unit="K")),
+]
+
+NO_VALUES: Cells = [
+    *((word, NoValue(word.strip(), False)) for word in ("", " ", "\u00a0", "-", "--", "---")),
+    *((word, NoValue(word, False)) for word in ("\u2013", "\u2014", "\u2212", "...", "…")),
+    *((word, NoValue(word, False)) for word in ("n/a", "N/A", "NA", "n.a.", "none", "None")),
+    *((word, NoValue(word, False)) for word in ("null", "nan", "NaN")),
+    *((word, NoValue(word, True)) for word in ("TBD", "tbd", "tbc", "TBC", "tba", "?", "??")),
+    *((word, NoValue(word, True)) for word in ("x", "X", "unknown", "pending")),
+    (" n/a ", NoValue("n/a", False)),
+]
+
+REFUSED: Cells = [
+    *left("2,3", "12,25", "0,123", "1234,567", "12,3456", why=Reason.DECIMAL_COMMA),
+    *left("1.234,5", "2,3 ± 0,1", "<2,3", "13,2 Gyr", "2,3e5", why=Reason.DECIMAL_COMMA),
+    *left("2,345", "-2,345", ">2,345", "12,345 Mpc", why=Reason.COMMA_OR_GROUPS),
+    *left("1 2", "1.2 3.4", "1.2\n3.4", "10 12 33.5", "1 23 456", why=Reason.TWO_NUMBERS),
+    *left("2-3", "2\u20133", "2 - 3", "2.1 - 2.3", "2 to 3", "2..3", "2…3", why=Reason.RANGE),
+    *left("2~3", "6 < z < 7", "6<z<7", "2-3 Gyr", "2.1\u20142.3", why=Reason.RANGE),
+    *left("1.2/3.4", "1.2 / 3.4", "1.2 or 3.4", "1.2; 3.4", "1.2, 3.4", why=Reason.CANDIDATES),
+    *left("1.2 and 3.4", "1.2 & 3.4", "1.2|3.4", why=Reason.CANDIDATES),
+    *left("0.5→0.7", "0.5 -> 0.7", "0.5 => 0.7", why=Reason.CHANGE),
+    *left("12:30", "12:30:45", "2026-02-11", "1/2/2026", "11.02.2026", why=Reason.DATE_OR_TIME),
+    *left("1.2.3", "1.5.0", why=Reason.POINTS),
+    *left("2.3a", "2.3b", "2.3d", "2.3e", "2.3h", "2.3m", "2.3k", "12h", why=Reason.LETTER),
+    *left("2.3^a", "2.3 a", "2.3\u00aa", "7s", why=Reason.LETTER),
+    *left("1.3d3", "1.3D+03", why=Reason.FORTRAN),
+    *left("1.3×103", "1.3 x 103", "1.3*104", why=Reason.POWER),
+    *left("10³", "7²", why=Reason.POWER_OR_NOTE),
+    *left("2½", "½", "2.3 ⅓", why=Reason.FRACTION),
+    *left("2.3(a)", "2.3 (2)", "2.3 [5]", "2.3(phot)", "2.3[5]", why=Reason.BRACKET),
+    *left("2.3(12)", "2.3 (0.1)", "2.3 (3σ)", "2.34 (2.31-2.39)", why=Reason.BRACKET),
+    *left("2.34 [2.31, 2.39]", "2.345(12) [5]", "9.3 (K)", "13.2 Gyr (host)", why=Reason.BRACKET),
+    *left("(7.2)", "[7.2]", "(7.2) Gyr", why=Reason.BRACKETED),
+    *left("2.34+0.05", "2.34 +0.05", "2.34 \u22120.03", why=Reason.ONE_ERROR),
+    *left("2.34 +0.05 +0.03", "2.34 ± 0.02 ± 0.03", "2.345(12)(7)", why=Reason.TWO_ERRORS),
+    *left("2.34 ±", "2.34 ± ?", "2.34 +/-", why=Reason.NO_ERROR),
+    *left("±0.1", "+/- 0.1", "+0.05/-0.03", why=Reason.ERROR_ALONE),
+    *left("2.34 ± 5%", "5 ± 1%", "13.2 Gyr ± 5%", why=Reason.RELATIVE_ERROR),
+    *left("2.34 ± 0.02 × 10³", "2.34 ± 0.02e3", why=Reason.ERROR_POWER),
+    *left("2.345(+12,-10)", "2.345(+12/-10)", why=Reason.ERROR_SCALE),
+    *left(">6 ± 0.1", "<2.345(12)", "<2.34 +0.05/-0.03", why=Reason.LIMIT_ERROR),
+    *left(">>6", "≪0.1", "=>6", "=<6", "≠6", "<>6", why=Reason.LIMIT_SIGN),
+    *left("--1.2", "- 1.3", "+-1.2", "2.34 ± -0.02", "6<", "6+", why=Reason.SIGNS),
+    *left("z=1.2", "z=1.2?", "z > 6", "age = 13 Gyr", why=Reason.OTHER_NAME),
+    *left("450 mpc", "13.2 gyr", "3000 parsecs/h", "5 ly3", "300 Mpc/h", why=Reason.UNKNOWN_UNIT),
+    *left("13.2 Gyr ± 3 Mpc", "13.2 Gyr +0.1 Mpc -0.2 Mpc", why=Reason.UNITS_DIFFER),
+    *left("13.2 Gyr ago", "z~7", "z ≈ 7", "≈ 3 bn ly", "about seven or 8", why=Reason.WORDS),
+    *left("0.3 from host", "2.3 phot", "at least 6", "Ly-a 2.3", "l.2", why=Reason.WORDS),
+    *left("see notes", "two", "galaxy", "inf", "Infinity", "*", "±", "<", why=Reason.NO_NUMBER),
+    *left("#N/A", "#REF!", "#DIV/0!", "#VALUE!", "#NAME?", why=Reason.FORMULA_ERROR),
+    *left("١٢", "२.३", why=Reason.OTHER_DIGITS),
+    *left("2.\u200b3", "2\u00ad3", "\u202e5.2", "2.3\u00005", why=Reason.INVISIBLE),
+    *left("1e400", "1e-400", "9" * 40 + "e300", "2.3 ± 1e999", why=Reason.OUT_OF_RANGE),
+    *left("2." + "3" * 300, "no spectrum yet " * 30, why=Reason.TOO_LONG),
+    *left("1_000", "$1.2", "2.3!", "2.3.", "1,23,456", "2.3^3", "10,", why=Reason.UNCLEAR),
+]
+
+# With a decimal comma declared.
+COMMA: Cells = [
+    ("2,345", bare(2.345)),
+    ("2,3", bare(2.3)),
+    (",5", bare(0.5)),
+    ("7", bare(7.0)),
+    ("\u22122,3", bare(-2.3)),
+    ("1.234,5", bare(1234.5)),
+    ("1 234,5", bare(1234.5, Remark.DIGIT_GROUPS)),
+    ("1.234.567", bare(1234567.0, Remark.DIGIT_GROUPS)),
+    ("2,3e5", bare(2.3e5)),
+    ("1,3×10³", bare(1300.0)),
+    ("2,345(12)", read(2.345, 0.012)),
+    ("2,34 ± 0,02", read(2.34, 0.02)),
+    ("2,34 +0,05/-0,03", uneven(2.34, 0.05, 0.03)),
+    ("2,34 (+0,05, -0,03)", uneven(2.34, 0.05, 0.03)),
+    ("2,34 (+0,05; -0,03)", uneven(2.34, 0.05, 0.03)),
+    ("<0,1", bare(0.1, limit="<")),
+    ("13,2 Gyr", bare(13.2, unit="Gyr")),
+    ("c. 7,5", bare(7.5, Remark.APPROXIMATE)),
+    ("12,5 %", bare(0.125, Remark.PERCENT)),
+    ("2.3", bare(2.3, Remark.DECIMAL_POINT)),
+    ("0.123", bare(0.123, Remark.DECIMAL_POINT)),
+    ("2.3456", bare(2.3456, Remark.DECIMAL_POINT)),
+    ("n/a", NoValue("n/a", False)),
+    *left("2.345", "1.234 Mpc", why=Reason.POINT_OR_GROUPS),
+    *left("1,2, 3,4", "1,2; 3,4", why=Reason.CANDIDATES),
+    *left("1,2 3,4", why=Reason.TWO_NUMBERS),
+    *left("2,3-2,5", why=Reason.RANGE),
+    *left("1,234.5", "2,3,4", why=Reason.UNCLEAR),
+]
+
+# With brackets declared to be notes.
+NOTES: Cells = [
+    ("2.3(a)", bare(2.3, Remark.NOTE)),
+    ("2.3 (2)", bare(2.3, Remark.NOTE)),
+    ("2.3 [5]", bare(2.3, Remark.NOTE)),
+    ("2.3(phot)", bare(2.3, Remark.NOTE)),
+    ("2.345(12)", bare(2.345, Remark.NOTE)),
+    ("2.34 (2.31-2.39)", bare(2.34, Remark.NOTE)),
+    ("2.3 (a) [5]", bare(2.3, Remark.NOTE)),
+    (">6 (no line)", bare(6.0, Remark.NOTE, limit=">")),
+    ("13.2 Gyr (host)", bare(13.2, Remark.NOTE, unit="Gyr")),
+    ("13.2 (a) Gyr", bare(13.2, Remark.NOTE, unit="Gyr")),
+    ("2.34 ± 0.02 (a)", read(2.34, 0.02, None, Remark.NOTE)),
+    # Some brackets are no notes even so.
+    ("2.34 (±0.02)", read(2.34, 0.02)),
+    ("2.34 (+0.05, -0.03)", uneven(2.34, 0.05, 0.03)),
+    ("(13.2 ± 0.1) Gyr", read(13.2, 0.1, unit="Gyr")),
+    ("13.2 (Gyr)", bare(13.2, unit="Gyr")),
+    ("1.3x10^(3)", bare(1300.0)),
+    ("7 (?)", bare(7.0, Remark.UNCERTAIN)),
+    *left("(7.2)", why=Reason.BRACKETED),
+    *left("(a)", why=Reason.NO_NUMBER),
+    *left("2.3 (a", why=Reason.UNCLEAR),
+]
+
+# In a column whose quantity may be spelled "z" or "redshift".
+NAMES = ("z", "redshift")
+NAMED: Cells = [
+    ("z=1.2?", bare(1.2, Remark.NAMED, Remark.UNCERTAIN)),
+    ("z=1.2", bare(1.2, Remark.NAMED)),
+    ("z = 1.2", bare(1.2, Remark.NAMED)),
+    ("z = 1.2 ± 0.1", read(1.2, 0.1, None, Remark.NAMED)),
+    ("z = ~7", bare(7.0, Remark.NAMED, Remark.APPROXIMATE)),
+    ("z > 6", bare(6.0, Remark.NAMED, limit=">")),
+    ("z<=0.1", bare(0.1, Remark.NAMED, limit="≤")),
+    ("redshift >~ 6", bare(6.0, Remark.NAMED, limit="≳")),
+    ("1.2", bare(1.2)),
+    *left("Z=0.02", "z_phot=1.2", "age = 1.2", "zz > 6", why=Reason.OTHER_NAME),
+    *left("z~7", "z 7", why=Reason.WORDS),
+    *left("z=1.2, 1.3", why=Reason.CANDIDATES),
+    *left("6 < z < 7", why=Reason.RANGE),
+    *left("z => 6", "z == 6", why=Reason.LIMIT_SIGN),
+]
+
+AS_TYPED: Cells = [
+    *NUMBERS,
+    *CONCISE,
+    *EVEN_ERRORS,
+    *UNEVEN_ERRORS,
+    *LIMITS,
+    *MARKED,
+    *UNITS,
+    *NO_VALUES,
+    *REFUSED,
+]
