@@ -7,6 +7,11 @@ from typing import TYPE_CHECKING, Any
 
 if TYPE_CHECKING:
     from epochconv.conversion import convert
+    from epochconv.conversion_with_error import (
+        LinearError,
+        convert_with_error,
+        convert_with_linear_error,
+    )
     from epochconv.epochs import Epoch, epoch
     from epochconv.errors import (
         ArgumentError,
@@ -16,6 +21,7 @@ if TYPE_CHECKING:
     )
     from epochconv.history import ExpansionHistory
     from epochconv.published import ParameterSet, parameter_set, parameter_sets
+    from epochconv.with_error import WithError
 
 __version__ = "0.1.0"
 
@@ -26,10 +32,14 @@ _HOMES = {
     "Epoch": "epochs",
     "EpochconvError": "errors",
     "ExpansionHistory": "history",
+    "LinearError": "conversion_with_error",
     "OutOfRangeError": "errors",
     "ParameterSet": "published",
     "TwoAnswersError": "errors",
+    "WithError": "with_error",
     "convert": "conversion",
+    "convert_with_error": "conversion_with_error",
+    "convert_with_linear_error": "conversion_with_error",
     "epoch": "epochs",
     "parameter_set": "published",
     "parameter_sets": "published",
@@ -40,10 +50,14 @@ __all__ = [
     "Epoch",
     "EpochconvError",
     "ExpansionHistory",
+    "LinearError",
     "OutOfRangeError",
     "ParameterSet",
     "TwoAnswersError",
+    "WithError",
     "convert",
+    "convert_with_error",
+    "convert_with_linear_error",
     "epoch",
     "parameter_set",
     "parameter_sets",

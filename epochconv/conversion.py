@@ -82,31 +82,34 @@ def convert(
     return quantity_of(magnitude, unit_named(target_measure.unit), unit, value)
 
 
-def plain_values(value: Any, measure: Measure) -> tuple[FloatArray, tuple[int, ...]]:
+def plain_values(
+    value: Any, measure: Measure, name: str | None = None
+) -> tuple[FloatArray, tuple[int, ...]]:
     """Return a caller's value as a flat float array in the measure's unit, and its shape.
 
-    The array may share memory with the caller's and is not to be changed.
+    The array may share memory with the caller's and is not to be changed. `name` says in errors
+    what the value is; by default the measure.
 
     Raises:
         ArgumentError: it is no number, has the wrong dimension or an unknown unit.
     """
-    unit = unit_named(measure.unit)
+    unit, name = unit_named(measure.unit), name or measure.name
     if isinstance(value, str):
         number, given = number_and_unit(value)
         if given is not None:
             if given.dimension != unit.dimension:
                 raise ArgumentError(
-                    f"{value!r} is a {given.dimension}, but {measure.name} is a {unit.dimension}"
+                    f"{value!r} is a {given.dimension}, but {name} is a {unit.dimension}"
                 )
             number *= factor(given, unit)
         elif unit.dimension != "number":
             raise ArgumentError(
-                f"{value!r} has no unit; a text for {measure.name} needs one, such as "
+                f"{value!r} has no unit; a text for {name} needs one, such as "
                 f"'{value.strip()} {unit.symbol}'"
             )
         value = number
     elif is_quantity(value):
-        value = magnitude_of(value, unit, measure.name)
+        value = magnitude_of(value, unit, name)
     if isinstance(value, float):
         return np.array([value]), ()
     if isinstance(value, Decimal | Fraction):
@@ -115,11 +118,11 @@ def plain_values(value: Any, measure: Measure) -> tuple[FloatArray, tuple[int, .
         array = np.asanyarray(value)
     except (TypeError, ValueError):
         raise ArgumentError(
-            f"{measure.name}: {_shortened(value)} is no array of numbers; give numbers, or one "
+            f"{name}: {_shortened(value)} is no array of numbers; give numbers, or one "
             "quantity that holds an array of them"
         ) from None
     if array.dtype.kind not in "iuf":
-        raise ArgumentError(f"{measure.name}: {_shortened(value)} is not made of numbers")
+        raise ArgumentError(f"{name}: {_shortened(value)} is not made of numbers")
     array = array.astype(np.float64, copy=False)
     if isinstance(array, np.ma.MaskedArray):
         array = array.filled(np.nan)

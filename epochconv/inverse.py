@@ -13,7 +13,7 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from epochconv.hermite import BLOCK, FloatArray
+from epochconv.hermite import BLOCK, BoolArray, FloatArray
 from epochconv.history import ExpansionHistory
 from epochconv.measure import Measure
 from epochconv.moment import Moment
@@ -49,6 +49,63 @@ def range_of(measure: Measure, history: ExpansionHistory) -> tuple[float, float]
         return float(low), float(high)
     ends = [value for branch in _branches(measure, history) for value in branch.values]
     return float(min(ends)), float(max(ends))
+
+
+def turning_points(measure: Measure, history: ExpansionHistory) -> tuple[float, ...]:
+    """Return the x at which the measure turns over under the history; mostly none."""
+    if measure.moment_of is not None:
+        return ()
+    if measure.rescaled_from is not None:
+        return turning_points(measure.rescaled_from[0], history)
+    return tuple(float(branch.knots[0]) for branch in _branches(measure, history)[1:])
+
+
+def followed(
+    measure: Measure,
+    values: FloatArray,
+    start: Moment,
+    history: ExpansionHistory,
+    *,
+    side: str | None = None,
+) -> tuple[Moment, BoolArray]:
+    """Return the moments at values, each on the branch on which its `start` lies.
+
+    A value beyond an end of that branch is cut there. NaN in either gives NaN.
+
+    Args:
+        values: in the measure's unit, of shape (n,); infinities are cut.
+        start: moments of shape (n,).
+        side: "farther" puts a start on a turning point onto the branch that begins there; it
+            lies on the one that ends there otherwise.
+    Returns:
+        The moments, and a mask of those that were cut.
+    """
+    if measure.rescaled_from is not None:
+        base, _, back = measure.rescaled_from
+        with np.errstate(over="ignore"):
+            based = back(values)
+        return followed(base, based, start, history, side=side)
+    if measure.moment_of is not None:
+        within, cut = cut_at(values, *range_of(measure, history))
+        return measure.moment_of(within, history), cut
+    x = np.full_like(values, np.nan)
+    cut = np.zeros(len(values), dtype=np.bool_)
+    branches = _branches(measure, history)
+    for branch in branches if side == "farther" else branches[::-1]:
+        # Later ones overwrite: a turning point is on two branches.
+        on = (start.x >= branch.knots[0]) & (start.x <= branch.knots[-1])
+        ends = sorted((float(branch.values[0]), float(branch.values[-1])))
+        within, cut[on] = cut_at(values[on], ends[0], ends[1])
+        x[on] = _solve(branch, measure, within, history)
+    return Moment(x=x), cut
+
+
+def cut_at(values: FloatArray, low: float, high: float) -> tuple[FloatArray, BoolArray]:
+    """Return the values cut at the two ends, and which were beyond them by more than rounding."""
+    within = np.clip(values, low, high)
+    with np.errstate(invalid="ignore"):  # minus infinity is an end of its own, of a modulus
+        cut = np.abs(values - within) > _ROUNDING * np.abs(within)
+    return within, cut
 
 
 @dataclass(frozen=True)

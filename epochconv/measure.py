@@ -26,8 +26,9 @@ class Measure:
             does not exist.
         moment_of: moments at values inside the range; for a measure that is one-to-one under every
             history and knows its own inverse.
-        slope_at: derivative of the measure with respect to x = ln(1 + z), at x; for a measure
-            without `moment_of`, whose inverse is found by search and whose map may turn over.
+        slope_at: derivative of the measure with respect to x = ln(1 + z), at x. A measure without
+            `moment_of` needs it: its inverse is found by search, and its map may turn over. Any
+            other does for linear errors and for the error of a parameter set.
         rescaled_from: for a measure that is another one on a different scale: that measure, the map
             from its values and the map back to them. The inverse is then the other's.
         range_of: lowest and highest value that stand for a moment; by default from the search.

@@ -21,12 +21,24 @@ _HOGG = "Hogg 1999, arXiv:astro-ph/9905116"
 _NO_EPOCH = "is a neighbour's peculiar motion towards us and no epoch"
 
 
+def _stretch(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    return np.exp(x)
+
+
 def _scale_factor(moment: Moment, history: ExpansionHistory) -> FloatArray:
     return 1.0 / (1.0 + moment.redshift)
 
 
+def _scale_factor_slope(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    return -np.exp(-x)
+
+
 def _temperature(moment: Moment, history: ExpansionHistory) -> FloatArray:
     return history.temperature_today * (1.0 + moment.redshift)
+
+
+def _temperature_slope(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    return history.temperature_today * np.exp(x)
 
 
 def _lookback_time(moment: Moment, history: ExpansionHistory) -> FloatArray:
@@ -34,6 +46,14 @@ def _lookback_time(moment: Moment, history: ExpansionHistory) -> FloatArray:
     history.tables.times(moment.x, result, None)
     result *= history.hubble_time_gyr
     return result
+
+
+def _lookback_slope(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    return history.hubble_time_gyr / history.expansion.rate(x)
+
+
+def _age_slope(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    return -_lookback_slope(x, history)
 
 
 def _age(moment: Moment, history: ExpansionHistory) -> FloatArray:
@@ -47,6 +67,10 @@ def _comoving_distance(moment: Moment, history: ExpansionHistory) -> FloatArray:
     result = history.tables.distance(moment.x)
     result *= history.hubble_length_mpc
     return result
+
+
+def _comoving_slope(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    return history.hubble_length_mpc * np.exp(x) / history.expansion.rate(x)
 
 
 def _transverse(x: FloatArray, history: ExpansionHistory) -> tuple[FloatArray, FloatArray]:
@@ -118,6 +142,12 @@ def _modulus(moment: Moment, history: ExpansionHistory) -> FloatArray:
         return _modulus_of_distance(_luminosity_distance(moment, history))
 
 
+def _modulus_slope(x: FloatArray, history: ExpansionHistory) -> FloatArray:
+    distance, slope = _transverse(x, history)
+    with np.errstate(divide="ignore"):
+        return 5.0 / math.log(10.0) * (1.0 + slope / distance)
+
+
 def _hubble_rate(moment: Moment, history: ExpansionHistory) -> FloatArray:
     return history.hubble_constant * history.expansion.rate(moment.x)
 
@@ -143,6 +173,7 @@ REDSHIFT = Measure(
     source=_HOGG + ", section 3",
     value_at=lambda moment, history: moment.redshift,
     moment_of=lambda values, history: Moment(redshift=values),
+    slope_at=_stretch,
     range_of=lambda history: (0.0, HIGHEST_REDSHIFT),
     below=_NO_EPOCH,
     above=_BEFORE_TABLE,
@@ -156,6 +187,7 @@ SCALE_FACTOR = Measure(
     source=_HOGG + ", section 3",
     value_at=_scale_factor,
     moment_of=lambda values, history: Moment(redshift=(1.0 - values) / values),
+    slope_at=_scale_factor_slope,
     range_of=lambda history: (1.0 / (1.0 + HIGHEST_REDSHIFT), 1.0),
     below=_BEFORE_TABLE,
     above="lies in the future",
@@ -172,6 +204,7 @@ LOOKBACK_TIME = Measure(
     moment_of=lambda values, history: Moment(
         x=history.tables.x_of_lookback(values / history.hubble_time_gyr)
     ),
+    slope_at=_lookback_slope,
     range_of=lambda history: (0.0, history.tables.age_today * history.hubble_time_gyr),
     below="lies in the future",
     above="is older than the universe",
@@ -188,6 +221,7 @@ AGE = Measure(
     moment_of=lambda values, history: Moment(
         x=history.tables.x_of_age(values / history.hubble_time_gyr)
     ),
+    slope_at=_age_slope,
     range_of=lambda history: (
         float(_age(_highest(history), history)[0]),
         history.tables.age_today * history.hubble_time_gyr,
@@ -211,6 +245,7 @@ COMOVING_DISTANCE = Measure(
     moment_of=lambda values, history: Moment(
         x=history.tables.x_of_distance(values / history.hubble_length_mpc)
     ),
+    slope_at=_comoving_slope,
     range_of=lambda history: (0.0, history.tables.distance_highest * history.hubble_length_mpc),
     below="is no distance",
     above="is beyond the particle horizon",
@@ -227,6 +262,7 @@ CMB_TEMPERATURE = Measure(
     moment_of=lambda values, history: Moment(
         redshift=(values - history.temperature_today) / history.temperature_today
     ),
+    slope_at=_temperature_slope,
     range_of=lambda history: (
         history.temperature_today,
         history.temperature_today * (1.0 + HIGHEST_REDSHIFT),
@@ -282,6 +318,7 @@ DISTANCE_MODULUS = Measure(
     source=_HOGG + ", section 7",
     aliases=("mu", "modulus"),
     value_at=_modulus,
+    slope_at=_modulus_slope,
     rescaled_from=(LUMINOSITY_DISTANCE, _modulus_of_distance, _distance_of_modulus),
     above=_BEFORE_TABLE,
     missing="does not exist at redshift 0",

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 import difflib
+import math
+from collections.abc import Mapping
 from dataclasses import dataclass, field
 
 from epochconv.errors import ArgumentError
@@ -10,6 +12,22 @@ from epochconv.history import ExpansionHistory
 from epochconv.registry import folded
 
 DEFAULT = "planck 2018"
+
+
+@dataclass(frozen=True)
+class Combination:
+    """A published product of powers of two parameters, whose error tells their correlation.
+
+    Attributes:
+        symbol: as the publication writes it.
+        powers: by parameter.
+        value, error: published, with the 68 % error.
+    """
+
+    symbol: str
+    powers: Mapping[str, int] = field(hash=False)
+    value: float
+    error: float
 
 
 @dataclass(frozen=True)
@@ -23,6 +41,8 @@ class ParameterSet:
         errors: published 68 % errors by parameter: one number, or (upper, lower).
         assumptions: what the publication combines and assumes; says so where a value comes from
             memory and was not read again.
+        combination: a further published number, from which the correlation of two parameters
+            follows; None where there is none.
     """
 
     name: str
@@ -30,6 +50,38 @@ class ParameterSet:
     citation: str
     errors: dict[str, float | tuple[float, float]] = field(hash=False)
     assumptions: str
+    combination: Combination | None = None
+
+    @property
+    def correlations(self) -> dict[tuple[str, str], float]:
+        """Correlation by pair of parameters, where the publication tells it; others count as 0.
+
+        To first order, the relative error of a product p^k q^l is the root of
+        (k dp/p)² + (l dq/q)² + 2 r (k dp/p) (l dq/q), which is solved for r.
+        """
+        if self.combination is None:
+            return {}
+        (one, other), (p, q) = self.combination.powers, self._relative_errors()
+        squared = (self.combination.error / self.combination.value) ** 2
+        return {(one, other): (squared - p * p - q * q) / (2.0 * p * q)}
+
+    def error_of(self, parameter: str) -> float:
+        """Return the symmetric 68 % error of a parameter in `errors`.
+
+        Two unequal sides are averaged in quadrature.
+        """
+        error = self.errors[parameter]
+        if isinstance(error, tuple):
+            return math.sqrt(0.5 * (error[0] ** 2 + error[1] ** 2))
+        return error
+
+    def _relative_errors(self) -> list[float]:
+        """Return k dp/p for the parameters of the combination."""
+        assert self.combination is not None
+        return [
+            power * self.error_of(name) / float(getattr(self.history, name))
+            for name, power in self.combination.powers.items()
+        ]
 
 
 _SETS = (
@@ -40,6 +92,9 @@ _SETS = (
         errors={"hubble_constant": 0.54, "matter": 0.0073},
         assumptions="flat; matter includes one neutrino of 0.06 eV; N_eff 3.046; "
         "T 2.7255 K (Fixsen 2009, ApJ 707, 916, rounded)",
+        combination=Combination(
+            "Ω_m h³", {"matter": 1, "hubble_constant": 3}, value=0.09633, error=0.00030
+        ),
     ),
     ParameterSet(
         name="planck 2018 with bao",
@@ -47,6 +102,9 @@ _SETS = (
         citation="Planck Collaboration VI 2020, A&A 641, A6, table 2 (TT,TE,EE+lowE+lensing+BAO)",
         errors={"hubble_constant": 0.42, "matter": 0.0056},
         assumptions="flat; matter includes one neutrino of 0.06 eV; N_eff 3.046; T 2.7255 K",
+        combination=Combination(
+            "Ω_m h³", {"matter": 1, "hubble_constant": 3}, value=0.09635, error=0.00030
+        ),
     ),
     ParameterSet(
         name="wmap 2013",
@@ -135,6 +193,12 @@ def history_of(history: ExpansionHistory | str | None) -> ExpansionHistory:
     return parameter_set(history).history
 
 
+def set_with(history: ExpansionHistory) -> ParameterSet | None:
+    """Return the published parameter set with this history, or None."""
+    return next((one for one in _SETS if one.history == history), None)
+
+
 def label_of(history: ExpansionHistory) -> str:
     """Return the name of the parameter set with this history, or "own parameters"."""
-    return next((one.name for one in _SETS if one.history == history), "own parameters")
+    found = set_with(history)
+    return "own parameters" if found is None else found.name

@@ -23,6 +23,7 @@ BASE_NAMES = {
     "temperature": "kelvin",
     "rate": "1 / second",
     "energy": "joule",
+    "speed": "meter / second",
 }
 
 # Quantity class of a registry -> {(units of the quantity, unit wanted): factor}.
