@@ -89,7 +89,7 @@ def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
         )
     lines += [f"  note: {note}" for note in plan.notes]
     if dependents:
-        lines.append(f"  these read filled cells and show old results: {_readers(dependents)}")
+        lines.append(f"  these read filled cells and may show old results: {_readers(dependents)}")
         if dependents.cells:
             lines.append(
                 "  Excel recalculates them when it opens the file; in LibreOffice press"
