@@ -80,28 +80,6 @@ class Member:
         return header + self.name_bytes + self.extra + self.comment
 
 
-def new_member(name: str) -> Member:
-    """Return a deflated member called `name`, its sizes and CRC still zero."""
-    return Member(
-        name=name,
-        name_bytes=name.encode("utf-8"),
-        made_by=_VERSION,
-        needed=_VERSION,
-        flags=0 if name.isascii() else UTF8_FLAG,
-        method=DEFLATED,
-        dos_time=0,
-        dos_date=_FIRST_OF_1980,
-        crc=0,
-        compressed_size=0,
-        size=0,
-        internal_attributes=0,
-        external_attributes=0,
-        extra=b"",
-        comment=b"",
-        data_offset=0,
-    )
-
-
 def end_record(count: int, size: int, offset: int, comment: bytes) -> bytes:
     """Return the end of the directory: `count` entries in `size` bytes from `offset` on."""
     return END.pack(END_SIGNATURE, 0, 0, count, count, size, offset, len(comment)) + comment
