@@ -136,7 +136,8 @@ class Archive:
     ) -> None:
         """Write the zip file anew: changed members from their pieces, all others as they are.
 
-        Order, names, flags, methods, dates, attributes and comments stay. Memory does not grow with the size of a changed member.
+        Order, names, flags, methods, dates, attributes and comments stay. Memory does not grow
+        with the size of a changed member.
 
         Args:
             sink: empty, open for writing, seekable.

@@ -21,9 +21,6 @@ ENCRYPTED_FLAGS = 0x2041  # traditional, strong, and hidden header values
 DESCRIPTOR_FLAG = 0x0008  # sizes and CRC follow the data instead of standing in the local header
 UTF8_FLAG = 0x0800
 
-_VERSION = 20  # 2.0: deflate and folders
-_FIRST_OF_1980 = 0x0021  # the earliest date the format knows; a fixed one keeps results repeatable
-
 
 @dataclass(frozen=True, slots=True)
 class Member:
