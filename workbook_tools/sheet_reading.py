@@ -163,7 +163,7 @@ class SheetReading:
         return best, best_texts
 
     def _limit_rows(self) -> None:
-        """Set the rows of the log: those of the header's table, or all down to another table."""
+        """Set the rows of the log: those of the header's table, or all down to a table below."""
         if self.header_index is None:
             return
         start = self.header_index + 1
@@ -172,7 +172,12 @@ class SheetReading:
         table = next((t for t in map(self.table_of, columns) if t is not None), None)
         last = table.data.last_row if table is not None else None
         if last is None:
-            below = [t.ref.first_row for t in self.tables if t.ref.first_row > header]
+            below = [
+                table.ref.first_row
+                for table in self.tables
+                if table.ref.first_row > header
+                and any(table.ref.contains(table.ref.first_row, column) for column in columns)
+            ]
             last = min(below) - 1 if below else None
         stop = len(self.scan)
         if last is not None:
