@@ -114,7 +114,7 @@ TABLE: tuple[Unit, ...] = (
     ),
     Unit("au", "length", ASTRONOMICAL_UNIT_M, "astronomical_unit", ("AU",)),
     Unit("m", "length", 1.0, "meter", ("metre", "metres", "meter", "meters")),
-    Unit("km", "length", 1e3, "kilometer", ("kilometre", "kilometres")),
+    Unit("km", "length", 1e3, "kilometer", ("kilometre", "kilometres", "kilometers")),
     *_prefixed("yr", "time", JULIAN_YEAR_S, "year", ("year", "years")),
     Unit("d", "time", 86_400.0, "day", ("day", "days")),
     Unit("s", "time", 1.0, "second", ("sec", "second", "seconds")),

@@ -9,7 +9,6 @@ from concurrent.futures import Future, ThreadPoolExecutor
 from dataclasses import replace
 from io import BytesIO
 from pathlib import Path
-from types import MappingProxyType
 from typing import BinaryIO, Self
 
 from workbook_tools.errors import Refusal
@@ -22,7 +21,6 @@ from workbook_tools.zip_records import (
     STORED,
     Member,
     end_record,
-    new_member,
 )
 from workbook_tools.zip_refusals import damaged, too_large
 
@@ -37,8 +35,6 @@ _LEVEL, _STRATEGY = 5, zlib.Z_FILTERED
 _RAW = -zlib.MAX_WBITS
 _BLOCK = 1 << 17
 _BLOCKS_AHEAD = 8
-
-_NOTHING: Mapping[str, Pieces] = MappingProxyType({})
 
 
 class Archive:
@@ -137,30 +133,24 @@ class Archive:
         self,
         sink: BinaryIO,
         changed: Mapping[str, Pieces],
-        added: Mapping[str, Pieces] = _NOTHING,
     ) -> None:
         """Write the zip file anew: changed members from their pieces, all others as they are.
 
-        Order, names, flags, methods, dates, attributes and comments stay; added members follow at
-        the end. Memory does not grow with the size of a changed member.
+        Order, names, flags, methods, dates, attributes and comments stay. Memory does not grow
+        with the size of a changed member.
 
         Args:
             sink: empty, open for writing, seekable.
             changed: name of a member, in any case, to its new content; each is used up once.
-            added: new name to content.
         Raises:
             KeyError: `changed` names no member (a bug of ours).
-            ValueError: `added` names a member that exists (a bug of ours).
             Refusal: the result or a member in it would be too large.
         """
         replaced = {self._by_name[name.lower()].name: pieces for name, pieces in changed.items()}
-        for name in added:
-            if name in self:
-                raise ValueError(f"the member {name} exists")
         directory: list[bytes] = []
-        for member in (*self.members, *map(new_member, added)):
+        for member in self.members:
             offset = sink.tell()
-            pieces = replaced.get(member.name, added.get(member.name))
+            pieces = replaced.get(member.name)
             written = replace(member, flags=member.flags & ~DESCRIPTOR_FLAG)
             if pieces is None:
                 sink.write(written.local_header())

@@ -6,8 +6,7 @@ from typing import NamedTuple
 
 from workbook_tools.errors import Refusal
 from workbook_tools.relations import Package
-from workbook_tools.splice import Edit, EditKind
-from workbook_tools.xml_offsets import append_child, escape_attribute, parse, qualified
+from workbook_tools.xml_offsets import parse
 
 CONTENT_TYPES_PART = "[Content_Types].xml"
 
@@ -56,17 +55,6 @@ def read_content_types(package: Package) -> ContentTypes:
             for line in root.find_all("Default")
         },
     )
-
-
-def append_override(xml: bytes, name: str, content_type: str) -> Edit:
-    """Return the edit of the list `xml` that gives the part `name` a type of its own."""
-    root = parse(xml, CONTENT_TYPES_PART)
-    line = (
-        f'<{qualified(root.prefix, "Override")} PartName="/{escape_attribute(name)}"'
-        f' ContentType="{escape_attribute(content_type)}"/>'
-    )
-    # the only part ever added is a new style sheet, so the line counts as part of that style
-    return append_child(root, line.encode(), EditKind.STYLE_APPENDED)
 
 
 def _type(attributes: dict[str, str]) -> str:

@@ -9,8 +9,10 @@ from collections.abc import Sequence
 import numpy as np
 
 _FEWEST, _MOST = 3, 5
-_FIXED = re.compile(r"(?:#,##)?0(?:\.(0+))?")
-_SCIENTIFIC = re.compile(r"0(?:\.(0+))?E\+0+")
+# What a format shows that is no digit: texts, spaces as wide as a sign, colours, conditions.
+_AROUND = re.compile(r'"[^"]*"|\\.|_.|\*.|\[[^\]]*\]')
+_FIXED = re.compile(r"[#0?,]*[#0?](?:\.([#0?]+))?(%?)")
+_SCIENTIFIC = re.compile(r"[#0?]+(?:\.([#0?]+))?E[+-]0+")
 # All that the General format shows of a number in a cell of ordinary width.
 _GENERAL_DIGITS = 10
 
@@ -49,9 +51,10 @@ def shown_step(value: float, code: str) -> float:
     With a fixed or scientific format that is its last place. Otherwise it is the last digit of the
     number itself, of which the General format shows ten.
     """
-    fixed, scientific = _FIXED.fullmatch(code), _SCIENTIFIC.fullmatch(code)
+    plain = _AROUND.sub("", code).partition(";")[0].strip()
+    fixed, scientific = _FIXED.fullmatch(plain), _SCIENTIFIC.fullmatch(plain)
     if fixed is not None:
-        return 0.5 * 10.0 ** -len(fixed[1] or "")
+        return 0.5 * 10.0 ** -(len(fixed[1] or "") + 2 * len(fixed[2]))
     exponent = math.floor(math.log10(abs(value))) if value else 0
     digits = min(significant_digits(value), _GENERAL_DIGITS)
     if scientific is not None:

@@ -2,20 +2,17 @@
 
 from __future__ import annotations
 
-import posixpath
 from dataclasses import dataclass
 from enum import StrEnum
 from pathlib import PurePath
 from typing import NamedTuple
 
-from workbook_tools.content_types import append_override, read_content_types
+from workbook_tools.content_types import read_content_types
 from workbook_tools.errors import Refusal
 from workbook_tools.relations import (
     Package,
     Relation,
-    append_relation,
     relations_of,
-    relations_part,
 )
 from workbook_tools.splice import Edit, EditKind
 from workbook_tools.xml_offsets import Element, parse, qualified, set_attribute
@@ -25,7 +22,6 @@ STRICT = "http://purl.oclc.org/ooxml/spreadsheetml/main"
 
 _RELATIONS = "http://schemas.openxmlformats.org/officeDocument/2006/relationships"
 _STRICT_RELATIONS = "http://purl.oclc.org/ooxml/officeDocument/relationships"
-_STYLES_TYPE = "application/vnd.openxmlformats-officedocument.spreadsheetml.styles+xml"
 _EXTENSIONS = {
     "application/vnd.openxmlformats-officedocument.spreadsheetml.sheet.main+xml": ".xlsx",
     "application/vnd.ms-excel.sheet.macroenabled.main+xml": ".xlsm",
@@ -111,14 +107,6 @@ class WorkbookMap:
     warnings: tuple[str, ...]
 
 
-class NewPart(NamedTuple):
-    """A part to be added, and the edits of other parts (by name) that make it known."""
-
-    name: str
-    xml: bytes
-    edits: dict[str, list[Edit]]
-
-
 def read_workbook(package: Package) -> WorkbookMap:
     """Read the map of a workbook.
 
@@ -189,21 +177,6 @@ def recalculate_on_load(xml: bytes, part: str) -> list[Edit]:
     if calculation.flag("fullCalcOnLoad"):
         return []
     return [set_attribute(calculation, "fullCalcOnLoad", "1", kind)]
-
-
-def added_styles(package: Package, workbook: WorkbookMap, xml: bytes) -> NewPart:
-    """Return how a workbook without a style sheet gets the style sheet `xml`."""
-    folder = posixpath.dirname(workbook.part)
-    names = (posixpath.join(folder, f"styles{n}.xml") for n in ("", *range(1, 10_000)))
-    name = next(name for name in names if package.find(name) is None)
-    family = _STRICT_RELATIONS if workbook.strict else _RELATIONS
-    lists = package.find(relations_part(workbook.part))
-    assert lists is not None  # the sheets were found through it
-    relation = append_relation(
-        package.read(lists.name), lists.name, f"{family}/styles", posixpath.basename(name)
-    )
-    override = append_override(package.read(workbook.content_types_part), name, _STYLES_TYPE)
-    return NewPart(name, xml, {lists.name: [relation], workbook.content_types_part: [override]})
 
 
 def _workbook_part(package: Package) -> str:

@@ -26,7 +26,7 @@ from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import StyleSheet
 from workbook_tools.tables import Table, free_names
-from workbook_tools.typed_cells import EMPTY, LEFT, NUMBER, SUMS_UP, WHITE, ColumnCells
+from workbook_tools.typed_cells import EMPTY, LEFT, NOT_READ, NUMBER, SUMS_UP, WHITE, ColumnCells
 
 BoolArray = NDArray[np.bool_]
 
@@ -274,7 +274,7 @@ class _Filler:
         kinds = np.frombuffer(target.kinds, dtype=np.uint8)
         kept = ((kinds == WHITE) | (kinds == LEFT)) & ~np.isnan(self.moments.moment.x)
         for position in np.flatnonzero(kept).tolist():
-            shown = target.texts.get(position) or target.reasons.get(position, "white space")
+            shown = target.reasons.get(position, "white space").removeprefix(NOT_READ)
             address = self.reading.where(position, target.column)
             self.plan.left.append((address, f"not overwritten: {shown}"))
 

@@ -3,12 +3,10 @@
 from __future__ import annotations
 
 import posixpath
-import re
 from typing import NamedTuple, Protocol
 from urllib.parse import unquote
 
-from workbook_tools.splice import Edit, EditKind
-from workbook_tools.xml_offsets import append_child, escape_attribute, parse, qualified
+from workbook_tools.xml_offsets import parse
 
 
 class Named(Protocol):
@@ -87,26 +85,6 @@ def relations_part(part: str) -> str:
     """Return the name of the list of relations of a part; `""` gives that of the package."""
     folder, name = posixpath.split(part)
     return posixpath.join(folder, "_rels", f"{name}.rels")
-
-
-def append_relation(xml: bytes, part: str, type_uri: str, target: str) -> Edit:
-    """Return the edit that adds a relation under a free id.
-
-    Args:
-        xml: a relations part.
-        part: its name.
-        type_uri: full URI of the type.
-        target: as it shall be written.
-    """
-    root = parse(xml, part)
-    ids = [line.attributes.get("Id", "") for line in root.find_all("Relationship")]
-    numbers = [int(match[1]) for match in (re.fullmatch(r"rId(\d+)", i) for i in ids) if match]
-    line = (
-        f'<{qualified(root.prefix, "Relationship")} Id="rId{max(numbers, default=0) + 1}"'
-        f' Type="{escape_attribute(type_uri)}" Target="{escape_attribute(target)}"/>'
-    )
-    # the only relation ever added leads to a new style sheet, so it counts as part of that style
-    return append_child(root, line.encode(), EditKind.STYLE_APPENDED)
 
 
 def _target_part(package: Package, source: str, target: str) -> str | None:

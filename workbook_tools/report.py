@@ -69,7 +69,8 @@ def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
         place = f"{column_letters(column.column)} {column.heading.text!r}"
         origin = f"{column_letters(column.source_column)} {column.source.text!r}"
         new = "new column " if column.added else ""
-        lines.append(f"  {new}{place}: {column.count} cells filled from {origin}")
+        cells_filled = "1 cell" if column.count == 1 else f"{column.count} cells"
+        lines.append(f"  {new}{place}: {cells_filled} filled from {origin}")
     cells: dict[str, list[str]] = {}
     for cell, reason in plan.left:
         cells.setdefault(reason, []).append(cell)
@@ -89,7 +90,7 @@ def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
         )
     lines += [f"  note: {note}" for note in plan.notes]
     if dependents:
-        lines.append(f"  these read filled cells and show old results: {_readers(dependents)}")
+        lines.append(f"  these read filled cells and may show old results: {_readers(dependents)}")
         if dependents.cells:
             lines.append(
                 "  Excel recalculates them when it opens the file; in LibreOffice press"

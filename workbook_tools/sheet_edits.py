@@ -11,8 +11,7 @@ import numpy as np
 
 from workbook_tools.cell_address import Range, column_letters
 from workbook_tools.column_widths import width_edits
-from workbook_tools.errors import Refusal
-from workbook_tools.sheet_scan import CellSpan, SheetScan
+from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.splice import Edit, EditKind
 from workbook_tools.written_values import range_in
 from workbook_tools.xml_offsets import escape_text, qualified, set_attribute
@@ -50,7 +49,7 @@ def edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
     an empty one.
 
     Raises:
-        Refusal: a cell would land where it cannot be written without moving others.
+        Refusal: the extent or the columns of the sheet are written in a way that is none.
         ValueError: a cell would land on one that holds something (a bug of ours).
     """
     new = sorted((one for one in new if one.rows or one.heading), key=lambda one: one.column)
@@ -186,11 +185,7 @@ def _inserted_rows(scan: SheetScan, index: int, rows: list[bytes]) -> Edit:
     """Return the edit that puts whole rows before the row element with that index."""
     body = b"".join(rows)
     if index < len(scan):
-        if not scan.rows_explicit:
-            raise Refusal(
-                f"{scan.part} has rows without numbers, and a new row would renumber them; open the"
-                " workbook in its own program, save it and try again."
-            )
+        # A row that does not say its number follows the one before: no new one is due between them.
         return Edit(EditKind.ROW_INSERTED, scan.starts[index], scan.starts[index], body)
     if scan.data.self_closing:
         name = qualified(scan.data.prefix, "sheetData").encode()
@@ -226,14 +221,14 @@ def _edits_among_cells(
     for column, cell in cells:
         while place < len(old) and old[place].column < column:
             if pending:
-                yield _inserted_cells(scan, position, pending, old[place])
+                yield _inserted_cells(position, pending)
                 pending = []
             position = old[place].end
             place += 1
         if place < len(old) and old[place].column == column:
             span = old[place]
             if pending:
-                yield _inserted_cells(scan, position, pending, span)
+                yield _inserted_cells(position, pending)
                 pending = []
             if not scan.is_empty(span):
                 raise ValueError(f"row {scan.numbers[index]}, column {column} is not empty")
@@ -243,17 +238,11 @@ def _edits_among_cells(
         else:
             pending.append(cell)
     if pending:
-        yield _inserted_cells(scan, position, pending, old[place] if place < len(old) else None)
+        yield _inserted_cells(position, pending)
 
 
-def _inserted_cells(
-    scan: SheetScan, position: int, cells: list[bytes], following: CellSpan | None
-) -> Edit:
-    if following is not None and not following.explicit:
-        raise Refusal(
-            f"{scan.part} has cells without addresses, and a new cell before them would move them;"
-            " open the workbook in its own program, save it and try again."
-        )
+def _inserted_cells(position: int, cells: list[bytes]) -> Edit:
+    # Nor can a cell without an address follow a gap in which a new one is due.
     return Edit(EditKind.CELL_INSERTED, position, position, b"".join(cells))
 
 

@@ -11,7 +11,7 @@ from workbook_tools.headings import Heading, lacks_unit, read_heading
 from workbook_tools.parts import Sheet
 from workbook_tools.sheet_scan import SheetScan, attributes_of
 from workbook_tools.tables import Table
-from workbook_tools.typed_cells import NUMBER, ColumnCells, read_columns, shown_text
+from workbook_tools.typed_cells import NOT_READ, NUMBER, ColumnCells, read_columns, shown_text
 from workbook_tools.written_values import range_in
 
 # A header row stands near the top: above it are titles, contacts, remarks.
@@ -101,7 +101,7 @@ class SheetReading:
         first = next((i for i in everything if cells.kinds[i] == NUMBER), None)
         if first is None:
             return
-        above = [i for i in cells.texts if i < first and not cells.reasons[i].startswith("a ")]
+        above = [i for i, why in cells.reasons.items() if i < first and why.startswith(NOT_READ)]
         self.header_index = max(above) if above else None
         self.texts = self._row_texts(self.header_index) if self.header_index is not None else {}
         self.rows = range(first, len(self.scan))
@@ -163,7 +163,7 @@ class SheetReading:
         return best, best_texts
 
     def _limit_rows(self) -> None:
-        """Set the rows of the log: those of the header's table, or all down to another table."""
+        """Set the rows of the log: those of the header's table, or all down to a table below."""
         if self.header_index is None:
             return
         start = self.header_index + 1
@@ -172,7 +172,12 @@ class SheetReading:
         table = next((t for t in map(self.table_of, columns) if t is not None), None)
         last = table.data.last_row if table is not None else None
         if last is None:
-            below = [t.ref.first_row for t in self.tables if t.ref.first_row > header]
+            below = [
+                table.ref.first_row
+                for table in self.tables
+                if table.ref.first_row > header
+                and any(table.ref.contains(table.ref.first_row, column) for column in columns)
+            ]
             last = min(below) - 1 if below else None
         stop = len(self.scan)
         if last is not None:

@@ -42,7 +42,6 @@ class CellSpan(NamedTuple):
         start, tag_end, end: the element is `start:end`, its start tag `start:tag_end`.
         style: number of its format; 0 where it has none.
         type: the `t` attribute; "n" where it has none.
-        explicit: whether it says its own address.
     """
 
     column: int
@@ -51,7 +50,6 @@ class CellSpan(NamedTuple):
     end: int
     style: int
     type: str
-    explicit: bool
 
 
 class SheetScan:
@@ -137,7 +135,6 @@ class SheetScan:
                     position,
                     whole_number(attributes.get("s", b"0"), self.part),
                     attributes.get("t", b"n").decode(),
-                    address is not None,
                 )
             )
         return spans
@@ -166,7 +163,6 @@ class SheetScan:
             end,
             whole_number(attributes.get("s", b"0"), self.part),
             attributes.get("t", b"n").decode(),
-            True,
         )
 
     @functools.cached_property

@@ -8,7 +8,6 @@ from __future__ import annotations
 from openpyxl.styles.numbers import BUILTIN_FORMATS, is_date_format
 
 from workbook_tools.errors import Refusal
-from workbook_tools.parts import STRICT, TRANSITIONAL
 from workbook_tools.splice import Edit, EditKind, spliced
 from workbook_tools.xml_offsets import (
     Element,
@@ -251,28 +250,3 @@ def _look(style: Element) -> _Look:
 
 def _count_edit(element: Element, count: int) -> list[Edit]:
     return [set_attribute(element, "count", str(count))] if "count" in element.attributes else []
-
-
-def blank_style_sheet(strict: bool) -> bytes:
-    """Return a style sheet with the one plain style 0, for a workbook that has none.
-
-    One font, two fills (none and gray125, which Excel expects first), one border.
-
-    Args:
-        strict: whether the workbook is of the strict family of namespaces.
-    """
-    family = STRICT if strict else TRANSITIONAL
-    return (
-        '<?xml version="1.0" encoding="UTF-8" standalone="yes"?>\n'
-        f'<styleSheet xmlns="{family}">'
-        '<fonts count="1"><font><sz val="11"/><name val="Calibri"/><family val="2"/></font></fonts>'
-        '<fills count="2"><fill><patternFill patternType="none"/></fill>'
-        '<fill><patternFill patternType="gray125"/></fill></fills>'
-        '<borders count="1"><border><left/><right/><top/><bottom/><diagonal/></border></borders>'
-        '<cellStyleXfs count="1"><xf numFmtId="0" fontId="0" fillId="0" borderId="0"/>'
-        "</cellStyleXfs>"
-        '<cellXfs count="1"><xf numFmtId="0" fontId="0" fillId="0" borderId="0" xfId="0"/>'
-        "</cellXfs>"
-        '<cellStyles count="1"><cellStyle name="Normal" xfId="0" builtinId="0"/></cellStyles>'
-        "</styleSheet>"
-    ).encode()

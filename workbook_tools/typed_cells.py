@@ -30,6 +30,9 @@ _RANGE = re.compile(r"\$?[A-Z]{1,3}\$?([0-9]{1,7}):\$?[A-Z]{1,3}\$?([0-9]{1,7})"
 _MOVING_ROW = re.compile(r"(?<![\w.$])\$?[A-Z]{1,3}([0-9]{1,7})(?![\w.(\[])", re.IGNORECASE)
 _THIS_ROW = re.compile(r"\[\[?#This Row\]", re.IGNORECASE)
 
+NOT_READ = "not read: "
+"""What precedes a text in the reason why it is left."""
+
 SUMS_UP = "a formula over other cells, not a row of the log"
 _DATE = "a date, not a number; what was typed is lost"
 
@@ -48,7 +51,6 @@ class ColumnCells:
         numbers: the value of each NUMBER cell; 0 elsewhere.
         styles: the format of each cell; -1 where there is no element.
         reasons: why a LEFT cell is left, by position.
-        texts: what a LEFT cell shows, by position, in one line of at most 60 signs.
         from_text, from_formulas: how many numbers were text, or results of formulas.
     """
 
@@ -58,7 +60,6 @@ class ColumnCells:
     numbers: array[float]
     styles: array[int]
     reasons: dict[int, str] = field(default_factory=dict)
-    texts: dict[int, str] = field(default_factory=dict)
     from_text: int = 0
     from_formulas: int = 0
 
@@ -157,7 +158,7 @@ class _ColumnReader:
                 assert cell is not None  # it has just been seen there
                 self.take(position, cell)
             elif self._shows_dates(style):
-                self._leave(position, style, _DATE, str(number))
+                self._leave(position, style, _DATE)
             else:
                 kinds[position] = NUMBER
                 numbers[position] = number
@@ -177,19 +178,18 @@ class _ColumnReader:
             return
         found = self._number_or_reason(cell, formula, text)
         if isinstance(found, str):
-            self._leave(position, cell.style, found, text)
+            self._leave(position, cell.style, found)
             return
         cells.kinds[position] = NUMBER
         cells.numbers[position] = found
         cells.from_text += cell.type in ("s", "inlineStr", "str")
         cells.from_formulas += formula is not None
 
-    def _leave(self, position: int, style: int, reason: str, text: str) -> None:
+    def _leave(self, position: int, style: int, reason: str) -> None:
         cells = self.cells
         cells.kinds[position] = LEFT
         cells.styles[position] = style
         cells.reasons[position] = reason
-        cells.texts[position] = _shortened(text)
 
     def _number_or_reason(self, cell: CellSpan, formula: str | None, text: str) -> float | str:
         if formula is not None and _sums_up_rows(formula):
@@ -197,14 +197,14 @@ class _ColumnReader:
         if not text.strip():
             return "a formula without a stored result; recalculate and save the workbook first"
         if cell.type == "b":
-            return f"not read: {text}"
+            return NOT_READ + text
         if cell.type == "e":
             return f"a formula error: {text}"
         if cell.type == "d" or (cell.type == "n" and self._shows_dates(cell.style)):
             return _DATE
         number = plain_number(text)
         if number is None or not math.isfinite(number):
-            return f"not read: {_shortened(text)}"
+            return NOT_READ + _shortened(text)
         return number
 
     def _shows_dates(self, style: int) -> bool:

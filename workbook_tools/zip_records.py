@@ -21,9 +21,6 @@ ENCRYPTED_FLAGS = 0x2041  # traditional, strong, and hidden header values
 DESCRIPTOR_FLAG = 0x0008  # sizes and CRC follow the data instead of standing in the local header
 UTF8_FLAG = 0x0800
 
-_VERSION = 20  # 2.0: deflate and folders
-_FIRST_OF_1980 = 0x0021  # the earliest date the format knows; a fixed one keeps results repeatable
-
 
 @dataclass(frozen=True, slots=True)
 class Member:
@@ -78,28 +75,6 @@ class Member:
         )
         header = CENTRAL.pack(CENTRAL_SIGNATURE, *fields)
         return header + self.name_bytes + self.extra + self.comment
-
-
-def new_member(name: str) -> Member:
-    """Return a deflated member called `name`, its sizes and CRC still zero."""
-    return Member(
-        name=name,
-        name_bytes=name.encode("utf-8"),
-        made_by=_VERSION,
-        needed=_VERSION,
-        flags=0 if name.isascii() else UTF8_FLAG,
-        method=DEFLATED,
-        dos_time=0,
-        dos_date=_FIRST_OF_1980,
-        crc=0,
-        compressed_size=0,
-        size=0,
-        internal_attributes=0,
-        external_attributes=0,
-        extra=b"",
-        comment=b"",
-        data_offset=0,
-    )
 
 
 def end_record(count: int, size: int, offset: int, comment: bytes) -> bytes:

@@ -128,7 +128,7 @@ def measured(start: float) -> dict[str, float]:
 def apart(task: str, *paths: Path) -> dict[str, float]:
     """Run one task of this file in a process of its own."""
     done = subprocess.run(
-        [sys.executable, __file__, task, *map(str, paths)],
+        [sys.executable, "-m", "tests.benchmarks.workbook_speed", task, *map(str, paths)],
         check=True,
         capture_output=True,
         text=True,

@@ -1,9 +1,8 @@
 """Does Excel take this workbook? Thirty rules that schemas and other readers do not check.
 
-Each rule is a thing for which Excel is known to offer a repair, or to refuse; the numbers R1 to
-R30 are those of the project's notes on the file format. The sources are ECMA-376 (clauses named
-beside the tables), the Open Packaging Conventions, and reports of repairs by users of programs
-that write workbooks. No Excel was at hand to confirm them.
+Each rule, R1 to R30, is a thing for which Excel is known to offer a repair, or to refuse; the
+first line of its function says what it asks. Sources: ECMA-376 and the Open Packaging Conventions,
+and reports of repairs by users of programs that write workbooks. No Excel was at hand to confirm.
 """
 
 from __future__ import annotations

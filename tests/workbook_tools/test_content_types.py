@@ -4,10 +4,9 @@ from __future__ import annotations
 
 import pytest
 
-from tests.workbook_tools.loose_parts import PACKAGE, LooseParts, applied
-from workbook_tools.content_types import append_override, read_content_types
+from tests.workbook_tools.loose_parts import PACKAGE, LooseParts
+from workbook_tools.content_types import read_content_types
 from workbook_tools.errors import Refusal
-from workbook_tools.splice import EditKind
 
 LIST = (
     f'<Types xmlns="{PACKAGE}/content-types">'
@@ -42,21 +41,3 @@ def test_the_list_is_found_in_any_case() -> None:
     assert read_content_types(LooseParts({"[content_types].XML": LIST})).part == (
         "[content_types].XML"
     )
-
-
-@pytest.mark.parametrize(
-    "xml",
-    [
-        LIST,
-        f'<Types xmlns="{PACKAGE}/content-types"/>',
-        f'<t:Types xmlns:t="{PACKAGE}/content-types"></t:Types>',
-    ],
-)
-def test_a_line_is_added_last(xml: str) -> None:
-    edit = append_override(xml.encode(), "xl/a&b.xml", "styles+xml")
-    assert edit.kind is EditKind.STYLE_APPENDED
-    after = applied(xml.encode(), [edit])
-    types = read_content_types(LooseParts({"[Content_Types].xml": after}))
-    before = read_content_types(LooseParts({"[Content_Types].xml": xml}))
-    assert types.overrides == before.overrides | {"xl/a&b.xml": "styles+xml"}
-    assert types.defaults == before.defaults

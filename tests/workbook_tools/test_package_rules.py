@@ -181,7 +181,7 @@ DAMAGES = [
 ]
 
 
-@pytest.mark.parametrize("damage", DAMAGES)
+@pytest.mark.parametrize("damage", DAMAGES, ids=[f"{rule} {what}" for rule, *_, what in DAMAGES])
 def test_damage_is_caught_by_its_rule(
     base: Path, tmp_path: Path, damage: tuple[str, str, str, str, str]
 ) -> None:

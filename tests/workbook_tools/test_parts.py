@@ -9,7 +9,6 @@ import pytest
 
 from tests.workbook_tools.corpus import corpus_paths, needs_corpus
 from tests.workbook_tools.loose_parts import (
-    DOCUMENT,
     MAIN,
     PACKAGE,
     STRICT_DOCUMENT,
@@ -29,7 +28,6 @@ from workbook_tools.parts import (
     SheetKind,
     SheetState,
     WorkbookMap,
-    added_styles,
     read_workbook,
     recalculate_on_load,
     table_parts,
@@ -291,29 +289,6 @@ def test_the_flag_takes_the_prefix_of_the_workbook() -> None:
 def test_a_workbook_that_recalculates_already_is_left_alone(value: str) -> None:
     xml = workbook(f'<sheets/><calcPr fullCalcOnLoad="{value}"/>').encode()
     assert recalculate_on_load(xml, "p") == []
-
-
-@pytest.mark.parametrize("strict", [False, True])
-def test_a_style_sheet_is_added_with_its_relation_and_content_type(strict: bool) -> None:
-    family = STRICT_DOCUMENT if strict else DOCUMENT
-    parts = small_book(links=relations(("rId7", f"{family}/worksheet", "worksheets/sheet1.xml")))
-    parts["xl/workbook.xml"] = workbook(
-        SHEETS.replace("rId1", "rId7"), STRICT_MAIN if strict else MAIN, family
-    )
-    parts["xl/Styles.xml"] = "unrelated"
-    package = LooseParts(parts)
-    found = read_workbook(package)
-    new = added_styles(package, found, b"<styles/>")
-    assert new.name == "xl/styles1.xml"
-    after = dict(package.parts) | {new.name: new.xml}
-    for name, edits in new.edits.items():
-        after[name] = applied(after[name], edits)
-    again = read_workbook(LooseParts(after))
-    assert again.styles_part == "xl/styles1.xml"
-    assert again.sheets == found.sheets
-    added = parse(after["xl/_rels/workbook.xml.rels"], "p").children[-1].attributes
-    assert (added["Id"], added["Type"]) == ("rId8", f"{family}/styles")
-    assert b"spreadsheetml.styles+xml" in after["[Content_Types].xml"]
 
 
 @pytest.mark.long

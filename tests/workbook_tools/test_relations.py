@@ -4,11 +4,9 @@ from __future__ import annotations
 
 import pytest
 
-from tests.workbook_tools.loose_parts import DOCUMENT, PACKAGE, LooseParts, applied, relations
+from tests.workbook_tools.loose_parts import LooseParts, relations
 from workbook_tools.errors import Refusal
-from workbook_tools.relations import append_relation, relations_of, relations_part
-from workbook_tools.splice import EditKind
-from workbook_tools.xml_offsets import parse
+from workbook_tools.relations import relations_of, relations_part
 
 
 @pytest.mark.parametrize(
@@ -69,28 +67,3 @@ def test_a_part_without_a_list_has_no_relations() -> None:
 def test_a_damaged_list_is_refused_by_name() -> None:
     with pytest.raises(Refusal, match=r"^xl/_rels/workbook\.xml\.rels is not well-formed"):
         relations_of(LooseParts({"xl/_rels/workbook.xml.rels": "<a>"}), "xl/workbook.xml")
-
-
-@pytest.mark.parametrize(
-    "xml",
-    [
-        relations(("rId3", "table", "a"), ("x", "table", "b"), ("rId12", "table", "c")),
-        relations(("rId12", "table", "a")).replace("rels", "rels"),
-    ],
-)
-def test_a_relation_is_added_last_under_a_free_id(xml: str) -> None:
-    edit = append_relation(xml.encode(), "w.rels", f"{DOCUMENT}/styles", "a&b.xml")
-    assert edit.kind is EditKind.STYLE_APPENDED
-    added = parse(applied(xml.encode(), [edit]), "w.rels").children[-1]
-    assert added.attributes == {
-        "Id": "rId13",
-        "Type": f"{DOCUMENT}/styles",
-        "Target": "a&b.xml",
-    }
-
-
-def test_a_relation_is_added_to_a_prefixed_empty_list() -> None:
-    xml = f'<p:Relationships xmlns:p="{PACKAGE}/relationships"/>'.encode()
-    after = applied(xml, [append_relation(xml, "w.rels", "t", "s.xml")])
-    package = LooseParts({"_rels/.rels": after, "s.xml": ""})
-    assert [(r.id, r.part) for r in relations_of(package, "")] == [("rId1", "s.xml")]

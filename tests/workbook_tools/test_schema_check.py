@@ -2,12 +2,11 @@
 
 from __future__ import annotations
 
-import os
 import zipfile
-from pathlib import Path
 
 import pytest
 
+from tests.workbook_tools.corpus import corpus_paths, needs_corpus
 from tests.workbook_tools.schema_check import (
     needs_schemas,
     package_schema_problems,
@@ -61,12 +60,10 @@ def test_a_part_without_schema_is_not_judged() -> None:
 
 
 @pytest.mark.long
-@pytest.mark.skipif(
-    not os.environ.get("EPOCHBOOK_CORPUS"), reason="EPOCHBOOK_CORPUS does not name a folder"
-)
+@needs_corpus
 def test_workbooks_of_real_programs_are_valid() -> None:
     judged, wrong = 0, {}
-    for path in sorted(Path(os.environ["EPOCHBOOK_CORPUS"]).rglob("*.xls[xm]")):
+    for path in corpus_paths():
         if zipfile.is_zipfile(path):
             found = package_schema_problems(path)
             judged += len(found)

@@ -14,7 +14,7 @@ from tests.workbook_tools.loose_parts import MAIN, STRICT_MAIN, applied
 from tests.workbook_tools.schema_check import needs_schemas, schema_problems
 from workbook_tools.errors import Refusal
 from workbook_tools.splice import EditKind, undone
-from workbook_tools.styles import MAX_CODE, MAX_STYLES, StyleSheet, blank_style_sheet
+from workbook_tools.styles import MAX_CODE, MAX_STYLES, StyleSheet
 from workbook_tools.xml_offsets import parse
 
 CODE = '0.000" Mpc"'
@@ -324,15 +324,6 @@ def test_more_styles_than_excel_allows_are_refused() -> None:
     assert sheet.with_format(5, "0.00") == MAX_STYLES - 1
 
 
-@pytest.mark.parametrize("strict", [False, True])
-def test_the_blank_sheet_has_one_plain_style_that_can_be_a_model(strict: bool) -> None:
-    xml = blank_style_sheet(strict)
-    sheet = StyleSheet(xml, "xl/styles.xml")
-    assert parse(xml, "p").uri == (STRICT_MAIN if strict else MAIN)
-    assert (len(sheet), sheet.format_code(0)) == (1, "General")
-    assert sheet.with_format(0, "0.0000") == 1
-
-
 def formatted_workbook() -> bytes:
     """A workbook of a real writer with a font, a fill and alignments."""
     sink = io.BytesIO()
@@ -368,17 +359,6 @@ def test_openpyxl_sees_the_neighbours_look_with_the_new_format() -> None:
     assert filled.font.b
     assert not filled.protection.locked
     assert (old.number_format, cells["A2"].number_format) == ("General", "yyyy-mm-dd")
-
-
-@pytest.mark.long
-@needs_schemas
-@pytest.mark.parametrize("strict", [False, True])
-def test_the_blank_sheet_and_what_is_appended_to_it_are_valid(strict: bool) -> None:
-    xml = blank_style_sheet(strict)
-    sheet = StyleSheet(xml, "p")
-    sheet.with_format(0, CODE)
-    assert schema_problems(xml) == []
-    assert schema_problems(applied(xml, sheet.edits())) == []
 
 
 @pytest.mark.long
