@@ -16,7 +16,11 @@ import re
 from epochconv.errors import ArgumentError
 from epochconv.units import Unit, find_unit
 
-_NUMBER = re.compile(r"[+\-−]?(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)(?:[eE][+\-−]?[0-9]+)?")
+SIGN = r"[+\-−]"
+DIGITS = r"(?:[0-9]+(?:\.[0-9]*)?|\.[0-9]+)"
+EXPONENT = rf"(?:[eE]{SIGN}?[0-9]+)"
+
+_NUMBER = re.compile(f"{SIGN}?{DIGITS}{EXPONENT}?")
 
 
 def number_and_rest(text: str) -> tuple[float, str] | None:

@@ -1,0 +1,100 @@
+"""Why a typed text is not read: the first cause that fits, the plainest ones first."""
+
+from __future__ import annotations
+
+import re
+import unicodedata
+
+from epochconv.typed_outcomes import Reason
+from epochconv.units import find_unit
+
+_N = r"[+-]?[0-9.,]*[0-9][.,]?(?:[eE][+-]?[0-9]+)?"
+_U = r"(?: ?[^\W\d]+)?"
+
+_FORMULA_ERROR = re.compile(
+    r"#(?:N/A|REF!|DIV/0!|VALUE!|NAME\?|NULL!|NUM!|SPILL!|CALC!|GETTING_DATA)"
+)
+_FRACTION = re.compile("[¼-¾⅐-⅞↉]")
+
+# Tried in this order on a text made plain and without its name.
+_CAUSES: tuple[tuple[Reason, re.Pattern[str]], ...] = tuple(
+    (reason, re.compile(pattern))
+    for reason, pattern in (
+        (Reason.CHANGE, rf"{_N}{_U} ?(?:→|⇒|➔|[-=]+>) ?{_N}"),
+        (Reason.DATE_OR_TIME, r"[0-9]{4}-[0-9]{1,2}-[0-9]{1,2}|[0-9]{1,2}-[0-9]{1,2}-[0-9]{2,4}\Z"),
+        (Reason.DATE_OR_TIME, r"[0-9]{1,4}/[0-9]{1,2}/[0-9]{1,4}|[0-9]{1,2}\.[0-9]{1,2}\.[0-9]{4}"),
+        (Reason.DATE_OR_TIME, r"[+-]?[0-9]{1,3} ?(?::[0-9]{2}|[°h] ?[0-9])"),
+        (Reason.POINTS, r"[+-]?[0-9]*\.[0-9]+\.[0-9]"),
+        (Reason.FORTRAN, r"[+-]?[0-9.]+[dD][+-]?[0-9]+\Z"),
+        (Reason.ERROR_ALONE, rf"± ?{_N}|[+-]{_N} ?[,/;]? ?[+-]{_N}\Z"),
+        (Reason.ONE_ERROR, rf"{_N}{_U}(?: ?\+ ?| -)[0-9.,]+{_U}\Z"),
+        (Reason.RANGE, rf"{_N}{_U} ?(?:-|—|~|\.\.\.?|…|to\b) ?{_N}{_U}\Z"),
+        (Reason.RANGE, rf"{_N} ?[<≤>≥]=? ?[^\W\d]\w* ?[<≤>≥]=? ?{_N}"),
+        (Reason.CANDIDATES, rf"{_N}{_U} ?(?:/|;|, |\||&|or\b|and\b) ?{_N}"),
+        (Reason.TWO_ERRORS, r".*(?:±.*±|\)\()"),
+        (Reason.TWO_ERRORS, rf"{_N}{_U} ?(?:\+ ?{_N} ?[,/;]? ?\+|- ?{_N} ?[,/;]? ?-)"),
+        (Reason.NO_ERROR, r".*± ?\??\Z"),
+        (Reason.LIMIT_SIGN, r"(?:[<>=≤≥≲≳~]{2,}|[≪≫≠]|!=)"),
+        (Reason.SIGNS, r"[+-][ +-]|.*[<>+-]\Z|.*± ?[+-]"),
+        (Reason.TWO_NUMBERS, rf"{_N}(?: {_N})+\Z"),
+        (Reason.POWER, r"[+-]?[0-9.]+ ?[×xX*·⋅] ?10 ?[0-9]+\Z"),
+        (Reason.POWER_OR_NOTE, r"[+-]?[0-9]+[⁺⁻]?[⁰¹²³⁴-⁹]+\Z"),
+        (Reason.BRACKETED, rf"[(\[] ?{_N}{_U} ?[)\]]"),
+        (Reason.BRACKET, rf"{_N}.*[(\[].*[)\]]"),
+        (Reason.LETTER, r"[+-]?[0-9.]+ ?\^?[a-zªº]\Z"),
+    )
+)
+_BEHIND = re.compile(rf"{_N} ?([^\W\d_].*)")
+_FIRST_WORD = re.compile(r"[^\W\d_]+")
+
+
+def reason_for(text: str, body: str) -> Reason:
+    """Return why a text is not read.
+
+    Args:
+        text: made plain.
+        body: the same without the marks that are understood, and with ± for its other spellings.
+    """
+    early = _unreadable(text)
+    if early is not None:
+        return early
+    for reason, pattern in _CAUSES:
+        if pattern.match(body) is not None:
+            return reason
+    if body[:1].isalpha():
+        return Reason.WORDS
+    behind = _BEHIND.fullmatch(body)
+    if behind is not None:
+        return Reason.UNKNOWN_UNIT if _looks_like_unit(behind[1]) else Reason.WORDS
+    return Reason.UNCLEAR
+
+
+def may_group_thousands(text: str, mark: str) -> bool:
+    """Tell whether each such mark may stand before a group of three digits."""
+    groups = re.findall(rf"(?<![0-9.,])[1-9][0-9]{{0,2}}[{mark}][0-9]{{3}}(?![0-9.,])", text)
+    return len(groups) == text.count(mark) > 0
+
+
+def _unreadable(text: str) -> Reason | None:
+    """Return why no number can be looked for in a text."""
+    if _FORMULA_ERROR.fullmatch(text) is not None:
+        return Reason.FORMULA_ERROR
+    if any(unicodedata.category(sign) in ("Cc", "Cf", "Cs", "Co", "Cn") for sign in text):
+        return Reason.INVISIBLE
+    if any(sign.isdecimal() and not sign.isascii() for sign in text):
+        return Reason.OTHER_DIGITS
+    if _FRACTION.search(text) is not None:
+        return Reason.FRACTION
+    if not any(sign.isdecimal() for sign in text):
+        return Reason.NO_NUMBER
+    return None
+
+
+def _looks_like_unit(text: str) -> bool:
+    """Tell a unit that is not in the table ("mpc", "erg/s") from words ("phot", "Gyr ago")."""
+    if " " in text:
+        return False
+    first = _FIRST_WORD.match(text)
+    stem = first.group() if first else text
+    known = any(find_unit(form) for form in (stem, stem.lower(), stem.capitalize(), stem.upper()))
+    return known or "/" in text or "^" in text or any(sign.isupper() for sign in text[1:])
