@@ -81,7 +81,7 @@ def _holds_units(row: Mapping[int, str]) -> bool:
 def _column(number: int, text: str, unit: str, group: str) -> Column:
     """Return a column with what its heading means by itself or under its group."""
     line = plain_line(text)
-    lines = (line,)
+    lines: tuple[str, ...] = (line,)
     meaning = meaning_of(text, unit, number)
     if group:
         lines = (*_under_group(line, group), line)

@@ -6,8 +6,9 @@ from collections.abc import Callable, Iterable, Sequence
 from dataclasses import dataclass
 
 from workbook_tools.cell_address import Range, column_letters
+from workbook_tools.column_meanings import Heading
 from workbook_tools.errors import UsageError
-from workbook_tools.headings import Heading, lacks_unit, read_heading
+from workbook_tools.headings import lacks_unit, read_heading
 from workbook_tools.parts import Sheet
 from workbook_tools.sheet_scan import SheetScan, attributes_of
 from workbook_tools.tables import Table

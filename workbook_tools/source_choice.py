@@ -5,8 +5,9 @@ from __future__ import annotations
 import re
 
 from workbook_tools.cell_address import column_letters, column_number
+from workbook_tools.column_meanings import Heading
 from workbook_tools.errors import UsageError
-from workbook_tools.headings import Heading, lacks_unit, read_heading, same_heading
+from workbook_tools.headings import lacks_unit, read_heading, same_heading
 from workbook_tools.request import Request
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.typed_cells import NUMBER, ColumnCells
