@@ -94,6 +94,8 @@ class Grammar:
         number = number_of(found["value"] + power, self._comma)
         decimals, remarks = len(number.mantissa.partition(".")[2]), [*number.remarks]
         if not digits.isdigit():
+            if self._comma and "," not in found["value"]:
+                raise Refused(Reason.BRACKET)  # "7(12,15)" names two references
             remarks.append(Remark.ERROR_IN_BRACKETS)
             error = number_of(digits + power, self._comma).value
         elif len(digits) <= decimals:
@@ -171,7 +173,13 @@ def _power_remarks(numbers: Sequence[Number]) -> set[Remark]:
     """Say that a power of ten stands on an error alone; refuse where it may be meant for all."""
     value, *errors = numbers
     powers = [error.power for error in errors if error.power]
-    if value.power or not powers:
+    if value.power:
+        # An error far below the last digit of 2.34e3 may share its power.
+        last_digit = 10.0 ** (value.exponent - len(value.mantissa.partition(".")[2]))
+        if any(0.0 < error.value < last_digit and not error.power for error in errors):
+            raise Refused(Reason.ERROR_POWER)
+        return set()
+    if not powers:
         return set()
     written_out = any(power[0] not in "eE" for power in powers)
     if written_out or any(error.value > abs(value.value) for error in errors):

@@ -35,6 +35,7 @@ _TEX = re.compile(
     r"\\(?:(?:(pm)|(times|cdot)|(sim|simeq|approx)|(lesssim)|(gtrsim)|(leq?)|(geq?))(?![A-Za-z])"
     r"|([,;: ]))"
 )
+_HAS_TEX = re.compile(r"[±×~≲≳≤≥]|[\^_][{+-]")
 _TEX_SIGNS = ("±", "×", "~", "≲", "≳", "≤", "≥", " ")
 
 _SILENT = frozenset(
@@ -67,8 +68,9 @@ def made_plain(text: str) -> str:
     text = text.strip(_ENDS).translate(_PLAIN)
     if "\\" in text:
         text = _TEX.sub(lambda found: _TEX_SIGNS[(found.lastindex or 1) - 1], text)
-    if len(text) > 2 and text[0] == text[-1] == "$" and "$" not in text[1:-1]:
-        text = text[1:-1]
+    dollars = text.count("$")
+    if dollars == 2 and (_HAS_TEX.search(text) or text[0] == text[-1] == "$"):
+        text = text.replace("$", "")
     return " ".join(text.split())
 
 

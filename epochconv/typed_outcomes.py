@@ -58,7 +58,9 @@ class Reason(StrEnum):
     NO_ERROR = "an error sign without an error"
     ERROR_ALONE = "an error without its value"
     RELATIVE_ERROR = "an error that may be relative; write value and error with % each"
-    ERROR_POWER = "a power of ten on the error alone; write it on both, or brackets around both"
+    ERROR_POWER = (
+        "a power of ten on value or error alone; write it on both, or brackets around both"
+    )
     ERROR_SCALE = "an error in brackets that may count last digits or not; write it with ±"
     LIMIT_ERROR = "a limit with an error"
     LIMIT_SIGN = "a sign of comparison that is not known here; use <, >, ≤ or ≥"

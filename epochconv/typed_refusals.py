@@ -26,26 +26,30 @@ _CAUSES: tuple[tuple[Reason, re.Pattern[str]], ...] = tuple(
         (Reason.DATE_OR_TIME, r"[+-]?[0-9]{1,3} ?(?::[0-9]{2}|[°h] ?[0-9])"),
         (Reason.POINTS, r"[+-]?[0-9]*\.[0-9]+\.[0-9]"),
         (Reason.FORTRAN, r"[+-]?[0-9.]+[dD][+-]?[0-9]+\Z"),
-        (Reason.ERROR_ALONE, rf"± ?{_N}|[+-]{_N} ?[,/;]? ?[+-]{_N}\Z"),
+        (Reason.ERROR_ALONE, rf"± ?{_N}|\+{_N} ?[,/;]? ?-{_N}\Z|-{_N} ?[,/;]? ?\+{_N}\Z"),
         (Reason.ONE_ERROR, rf"{_N}{_U}(?: ?\+ ?| -)[0-9.,]+{_U}\Z"),
         (Reason.RANGE, rf"{_N}{_U} ?(?:-|—|~|\.\.\.?|…|to\b) ?{_N}{_U}\Z"),
         (Reason.RANGE, rf"{_N} ?[<≤>≥]=? ?[^\W\d]\w* ?[<≤>≥]=? ?{_N}"),
+        (Reason.RANGE, rf"{_N}{_U} ?(?:[,;&]|and\b) ?[<≤>≥]=? ?{_N}"),
         (Reason.CANDIDATES, rf"{_N}{_U} ?(?:/|;|, |\||&|or\b|and\b) ?{_N}"),
-        (Reason.TWO_ERRORS, r".*(?:±.*±|\)\()"),
+        (Reason.CANDIDATES, r"[+-]?[0-9]*\.[0-9]+,[0-9]*\.[0-9]"),
+        (Reason.TWO_ERRORS, r".*(?:±.*±|\([0-9.]+\)\([0-9.]+\))"),
         (Reason.TWO_ERRORS, rf"{_N}{_U} ?(?:\+ ?{_N} ?[,/;]? ?\+|- ?{_N} ?[,/;]? ?-)"),
-        (Reason.NO_ERROR, r".*± ?\??\Z"),
+        (Reason.NO_ERROR, r".*± ?(?:[?—…-]+|\.\.\.|[Nn]/?[Aa]\b.*)?\Z"),
         (Reason.LIMIT_SIGN, r"(?:[<>=≤≥≲≳~]{2,}|[≪≫≠]|!=)"),
         (Reason.SIGNS, r"[+-][ +-]|.*[<>+-]\Z|.*± ?[+-]"),
-        (Reason.TWO_NUMBERS, rf"{_N}(?: {_N})+\Z"),
+        (Reason.TWO_NUMBERS, rf"{_N}{_U}(?: {_N}{_U})+\Z"),
         (Reason.POWER, r"[+-]?[0-9.]+ ?[×xX*·⋅] ?10 ?[0-9]+\Z"),
         (Reason.POWER_OR_NOTE, r"[+-]?[0-9]+[⁺⁻]?[⁰¹²³⁴-⁹]+\Z"),
-        (Reason.BRACKETED, rf"[(\[] ?{_N}{_U} ?[)\]]"),
+        (Reason.BRACKETED, rf"[(\[] ?{_N}{_U} ?[)\]]|[(\[].*[)\]]\Z"),
         (Reason.BRACKET, rf"{_N}.*[(\[].*[)\]]"),
-        (Reason.LETTER, r"[+-]?[0-9.]+ ?\^?[a-zªº]\Z"),
+        (Reason.LETTER, r"[+-]?[0-9.]+ ?\^?[A-Za-zªº]\Z"),
     )
 )
-_BEHIND = re.compile(rf"{_N} ?([^\W\d_].*)")
-_FIRST_WORD = re.compile(r"[^\W\d_]+")
+_SUPERSCRIPTS = "⁺⁻⁰¹²³⁴-⁹"
+_BEHIND = re.compile(rf"{_N} ?(?![eE] ?[+-]?[0-9])([^\W\d_{_SUPERSCRIPTS}].*)")
+_POWER_MARKS = re.compile(rf"[0-9^{_SUPERSCRIPTS}]")
+_WORD = re.compile(r"[A-Za-zµμ]+")
 
 
 def reason_for(text: str, body: str) -> Reason:
@@ -66,7 +70,8 @@ def reason_for(text: str, body: str) -> Reason:
     behind = _BEHIND.fullmatch(body)
     if behind is not None:
         return Reason.UNKNOWN_UNIT if _looks_like_unit(behind[1]) else Reason.WORDS
-    return Reason.UNCLEAR
+    has_words = any(len(word) > 1 and not _is_unit_word(word) for word in _WORD.findall(body))
+    return Reason.WORDS if has_words else Reason.UNCLEAR
 
 
 def may_group_thousands(text: str, mark: str) -> bool:
@@ -91,10 +96,16 @@ def _unreadable(text: str) -> Reason | None:
 
 
 def _looks_like_unit(text: str) -> bool:
-    """Tell a unit that is not in the table ("mpc", "erg/s") from words ("phot", "Gyr ago")."""
+    """Tell a unit that is not in the table ("mpc", "km s-1") from words ("phot", "Gyr ago")."""
     if " " in text:
+        return all(_is_unit_word(part) or _POWER_MARKS.search(part) for part in text.split())
+    return _is_unit_word(text) or "/" in text or any(sign.isupper() for sign in text[1:])
+
+
+def _is_unit_word(text: str) -> bool:
+    """Tell whether a text begins with a unit of the table, in any case of letters."""
+    found = _WORD.match(text)
+    if found is None:
         return False
-    first = _FIRST_WORD.match(text)
-    stem = first.group() if first else text
-    known = any(find_unit(form) for form in (stem, stem.lower(), stem.capitalize(), stem.upper()))
-    return known or "/" in text or "^" in text or any(sign.isupper() for sign in text[1:])
+    stem = found.group()
+    return any(find_unit(form) for form in (stem, stem.lower(), stem.capitalize(), stem.upper()))

@@ -8,16 +8,15 @@ from __future__ import annotations
 
 import functools
 import math
-import re
 from collections.abc import Collection
 from dataclasses import replace
 
 from epochconv.errors import ArgumentError
-from epochconv.number_text import EXPONENT, SIGN
 from epochconv.printing import number_text
+from epochconv.typed_common import read_common
 from epochconv.typed_grammar import grammar, with_error_signs
 from epochconv.typed_marks import Marked, made_plain, without_marks, without_notes, word_for_none
-from epochconv.typed_numbers import Refused, plain_digits
+from epochconv.typed_numbers import Refused
 from epochconv.typed_outcomes import NoValue, Reason, Remark, Typed, Unread
 from epochconv.typed_refusals import may_group_thousands, reason_for
 
@@ -25,15 +24,6 @@ __all__ = ["NoValue", "Reason", "Remark", "Typed", "Unread", "read_typed", "type
 
 _LONGEST = 200
 _LIMITS = ("<", ">", "≤", "≥", "≲", "≳")
-
-# Most cells are one of these; the grammar would read them to the same value.
-_COMMON = {
-    comma: re.compile(
-        rf"\s*([<>≤≥]?)\s*({SIGN}?{plain_digits(comma)}{EXPONENT}?)"
-        rf"(?:\s*(?:±|\+/-|\+-)\s*({plain_digits(comma)}))?\s*"
-    )
-    for comma in (False, True)
-}
 
 
 def read_typed(
@@ -54,8 +44,7 @@ def read_typed(
             "z = 1.2".
     """
     if len(text) <= _LONGEST:
-        found = _COMMON[decimal_comma].fullmatch(text)
-        read = _common(found, decimal_comma) if found is not None else None
+        read = read_common(text, decimal_comma, brackets_are_notes)
         if read is not None:
             return read
     return _read_closely(text, decimal_comma, brackets_are_notes, tuple(names))
@@ -90,30 +79,14 @@ def typed_text(
         )
     if limit not in ("", *_LIMITS) or (limit and errors):
         raise ArgumentError(f"{limit!r}: a limit is one of {' '.join(_LIMITS)} and has no errors")
-    number, *sizes = (_digits(one, digits) for one in (value, *errors))
-    if any("e" in size for size in sizes) and "e" not in number:
-        number += "e0"  # a power of ten on the error alone could be meant for both
-    if not sizes:
+    number = _digits(value, digits)
+    if not errors:
         return limit + number
-    upper, lower = sizes
+    upper, lower = (_written_out(_digits(error, digits)) for error in errors)
+    if any("e" in one for one in (number, upper, lower)):
+        # A power of ten on one of them alone could be meant for all.
+        number, upper, lower = (one if "e" in one else f"{one}e0" for one in (number, upper, lower))
     return f"{number} ± {upper}" if upper == lower else f"{number} +{upper}/-{lower}"
-
-
-def _common(found: re.Match[str], decimal_comma: bool) -> Typed | None:
-    limit, number, error = found.groups()
-    number = number.replace("−", "-")
-    if decimal_comma:
-        number = number.replace(",", ".")
-        error = error and error.replace(",", ".")
-    value = float(number)
-    if error is None:
-        if value == 0.0 or math.isinf(value):
-            return Typed(value, limit=limit) if number.strip("+-0.") == "" else None
-        return Typed(value, limit=limit)
-    size = float(error)
-    if limit or value == 0.0 or math.isinf(value) or math.isinf(size):
-        return None
-    return Typed(value, size, size)
 
 
 @functools.lru_cache(maxsize=4096)
@@ -137,7 +110,9 @@ def _read_closely(
         return read if name_fits else Unread(Reason.OTHER_NAME)
     reason = _reason_of_mark(plain, decimal_comma, brackets_are_notes)
     if reason is None:
-        reason = reason_for(plain, with_error_signs(marked.body if name_fits else plain))
+        reason = reason_for(plain, with_error_signs(marked.body))
+        if reason is Reason.UNCLEAR and not name_fits:
+            reason = Reason.OTHER_NAME
     return Unread(reason)
 
 
@@ -184,3 +159,11 @@ def _digits(value: float, digits: int) -> str:
     text = number_text(value, digits)
     # Rounded up, the largest floats are beyond all floats.
     return text if math.isfinite(float(text)) else repr(value)
+
+
+def _written_out(text: str) -> str:
+    """Return 6e-5 as 0.00006, as an error is read more easily; smaller numbers stay."""
+    mantissa, _, exponent = text.partition("e")
+    if not exponent or not -10 <= int(exponent) < 0:
+        return text
+    return "0." + "0" * (-int(exponent) - 1) + mantissa.replace(".", "")
