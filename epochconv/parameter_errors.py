@@ -9,6 +9,7 @@ of histories serves all values.
 from __future__ import annotations
 
 import functools
+import math
 
 import numpy as np
 
@@ -76,7 +77,8 @@ def with_parameter_error(
 ) -> Image:
     """Return an image under a set's history with the set's own error added.
 
-    It adds in quadrature on each side; ends that leave the target's range are cut there.
+    It adds in quadrature on each side. An end is cut where the target ends whatever the parameters
+    are, as a redshift does at 0; the age of the universe is no such end, since it moves with them.
 
     Args:
         image: of the target.
@@ -86,7 +88,7 @@ def with_parameter_error(
     """
     error = parameter_error(moment, source, target, parameters)
     values = image.values
-    limits = inverse.range_of(target, parameters.history)
+    limits = _fixed_limits(target, parameters)
     low, beneath = inverse.cut_at(values - np.hypot(values - image.low, error), *limits)
     high, beyond = inverse.cut_at(values + np.hypot(image.high - values, error), *limits)
     return Image(values, low, high, image.cut_low | beneath, image.cut_high | beyond)
@@ -111,6 +113,18 @@ def parameters_text(parameters: ParameterSet) -> str:
             for value in parameters.correlations.values()
         ]
     return f"errors of {parameters.name} counted: {'; '.join(parts)}"
+
+
+def _fixed_limits(measure: Measure, parameters: ParameterSet) -> tuple[float, float]:
+    """Return the ends of a measure that do not depend on the parameters."""
+    ends = {inverse.range_of(measure, parameters.history)}
+    for pair in _pairs(parameters.name):
+        ends |= {inverse.range_of(measure, history) for history in pair}
+    lows, highs = {low for low, _ in ends}, {high for _, high in ends}
+    lowest = min(lows)
+    if len(lows) > 1:  # no age and no rate is negative, wherever it begins
+        lowest = 0.0 if lowest >= 0.0 else -math.inf
+    return lowest, max(highs) if len(highs) == 1 else math.inf
 
 
 @functools.cache

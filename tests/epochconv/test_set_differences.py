@@ -35,9 +35,7 @@ def dependence(
 def test_age_at_redshift_six() -> None:
     """0.929 Gyr for 67.66 and 0.3111, 0.877 for 73 and 0.3 (own quadrature, without radiation)."""
     found = dependence([6.0], 0.01, "redshift", "age")
-    apart = [
-        epochconv.convert(6, "redshift", "age", history=name).magnitude for name in AT_ODDS
-    ]
+    apart = [epochconv.convert(6, "redshift", "age", history=name).magnitude for name in AT_ODDS]
     assert found.difference[0] == pytest.approx(abs(apart[0] - apart[1]), rel=1e-13)
     assert 0.05 < found.difference[0] < 0.15
     assert found.beyond_error.tolist() == [True]
@@ -66,9 +64,7 @@ def test_what_needs_no_history_depends_on_none() -> None:
         assert found.difference.tolist() == [0.0, 0.0]
         assert not found.beyond_error.any()
     # Planck's temperature and WMAP's differ by 0.0005 K.
-    found = dependence(
-        [1.0], 0.0, "redshift", "CMB temperature", sets=("planck 2018", "wmap 2013")
-    )
+    found = dependence([1.0], 0.0, "redshift", "CMB temperature", sets=("planck 2018", "wmap 2013"))
     assert found.difference[0] == pytest.approx(0.001, rel=1e-9)
 
 
