@@ -9,15 +9,37 @@ from workbook_tools.errors import Refusal, UsageError
 
 if TYPE_CHECKING:
     from workbook_tools.filling import FillResult, fill, write_columns
+    from workbook_tools.looking import Look, look
+    from workbook_tools.request import Choices
 
-__all__ = ["FillResult", "Refusal", "UsageError", "fill", "write_columns"]
+__all__ = [
+    "Choices",
+    "FillResult",
+    "Look",
+    "Refusal",
+    "UsageError",
+    "fill",
+    "look",
+    "write_columns",
+]
+
+
+# Loaded when first asked for, so that the command's --help answers at once. No module has the name
+# of a function here, which importing the module would shadow.
+_HOMES = {
+    "Choices": "request",
+    "FillResult": "filling",
+    "Look": "looking",
+    "fill": "filling",
+    "look": "looking",
+    "write_columns": "filling",
+}
 
 
 def __getattr__(name: str) -> Any:
-    # Loaded when first asked for, so that the command's --help answers at once. The module has
-    # another name than the function, which importing the module would shadow.
-    if name not in ("FillResult", "fill", "write_columns"):
+    home = _HOMES.get(name)
+    if home is None:
         raise AttributeError(f"module {__name__!r} has no attribute {name!r}")
-    value = getattr(importlib.import_module(f"{__name__}.filling"), name)
+    value = getattr(importlib.import_module(f"{__name__}.{home}"), name)
     globals()[name] = value
     return value

@@ -8,8 +8,8 @@ import numpy as np
 
 from epochconv.published import label_of, parameter_sets
 from workbook_tools.answers import FloatArray, Moments
+from workbook_tools.column_meanings import Heading
 from workbook_tools.errors import Refusal
-from workbook_tools.headings import Heading
 from workbook_tools.number_formats import shown_step
 from workbook_tools.typed_cells import NUMBER, ColumnCells
 
@@ -35,7 +35,7 @@ def refuse_disagreement(
     Raises:
         Refusal: names the first such cells and, where there is one, the set that they agree with.
     """
-    values, _ = moments.column(heading.measure, heading.unit)
+    values = moments.answers(heading).values
     compared = [
         p for p, kind in enumerate(target.kinds) if kind == NUMBER and not np.isnan(values[p])
     ]
@@ -71,7 +71,7 @@ def _better_set(
     """Return words for the published set with which all cells agree, if there is one."""
     for one in parameter_sets():
         other = moments.under(one.history)
-        values, _ = other.column(heading.measure, heading.unit)
+        values = other.answers(heading).values
         if bool(np.all(_agree(values[compared], typed, steps))):
             return f"; it agrees with --parameters '{one.name}'"
     return "; correct these cells, or fill another column"

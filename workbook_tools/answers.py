@@ -3,19 +3,50 @@
 from __future__ import annotations
 
 import math
+from dataclasses import dataclass
 
 import numpy as np
 from numpy.typing import NDArray
 
-from epochconv import inverse, through_x
+from epochconv import intervals, inverse, through_x
 from epochconv.history import ExpansionHistory
+from epochconv.intervals import Image, Spread
 from epochconv.measure import Measure
 from epochconv.moment import Moment
+from epochconv.parameter_errors import set_with_errors, with_parameter_error
+from epochconv.peculiar_motion import widened
 from epochconv.printing import number_text, with_unit
 from epochconv.published import label_of
-from epochconv.units import Unit, factor, unit_named
+from epochconv.units import factor, unit_named
+from workbook_tools.column_meanings import Heading
+from workbook_tools.request import ErrorTerms
+from workbook_tools.value_columns import ValueColumn
 
 FloatArray = NDArray[np.float64]
+
+NO_TERMS = ErrorTerms()
+
+_FLIPPED = {"<": ">", ">": "<", "≤": "≥", "≥": "≤", "≲": "≳", "≳": "≲"}
+
+
+@dataclass(frozen=True)
+class Answers:
+    """One measure for every row of a log, in the unit of its heading.
+
+    Attributes:
+        values: NaN where there is none.
+        lower, upper: sizes of the errors; NaN where none is known.
+        limits: the sign of each limit, by position.
+        reasons: why there is no value although there is a moment, by position.
+        cut: positions whose interval was cut at the end of what the source can be.
+    """
+
+    values: FloatArray
+    lower: FloatArray
+    upper: FloatArray
+    limits: dict[int, str]
+    reasons: dict[int, str]
+    cut: list[int]
 
 
 class Moments:
@@ -28,60 +59,131 @@ class Moments:
 
     def __init__(
         self,
-        numbers: FloatArray,
-        measure: Measure,
-        unit: Unit,
+        source: ValueColumn,
         history: ExpansionHistory,
         side: str | None,
+        terms: ErrorTerms = NO_TERMS,
     ) -> None:
         """Find the moments.
 
-        Args:
-            numbers: what the cells hold, in `unit`; NaN where nothing is to be converted.
+        Raises:
+            ArgumentError: an error term is asked for that the source or the set lacks.
         """
-        own = unit_named(measure.unit)
-        values = numbers * factor(unit, own)
+        measure = source.heading.measure
+        self.terms = terms
+        self._set = set_with_errors(history) if terms.parameters else None
+        scale = _scale(source.heading, history)
+        self.source, self.history, self.side = source, history, side
+        self.spread = Spread(source.values * scale, source.lower * scale, source.upper * scale)
+        if terms.peculiar_velocity is not None:
+            self.spread = widened(self.spread, measure, terms.peculiar_velocity)
+        self.reasons: dict[int, str] = {}
+        self.moment = self._moments(measure)
+        self._span: intervals.Span | None = None
+
+    def under(self, history: ExpansionHistory) -> Moments:
+        """Return the moments of the same column under another history."""
+        return Moments(self.source, history, self.side)  # its errors do not matter there
+
+    def answers(self, heading: Heading) -> Answers:
+        """Return what a column with that heading holds for each row."""
+        measure = heading.measure
+        scale = 1.0 / _scale(heading, self.history)
+        image = self.answers_in_own_unit(measure)
+        values = image.values * scale
+        missing = np.flatnonzero(np.isnan(values) & ~np.isnan(self.moment.x)).tolist()
+        reasons = dict.fromkeys(missing, f"{measure.name} {measure.missing}")
+        limits = self._limits(measure, values, reasons)
+        lower, upper = values - image.low * scale, image.high * scale - values
+        cut = np.flatnonzero((image.cut_low | image.cut_high) & ~np.isnan(values))
+        return Answers(values, lower, upper, limits, reasons, cut.tolist())
+
+    def answers_in_own_unit(self, measure: Measure) -> Image:
+        """Return values and intervals of a measure, in its own unit."""
+        image = self._image(measure)
+        if self._set is None:
+            return image
+        return with_parameter_error(
+            image, self.moment, self.source.heading.measure, measure, self._set
+        )
+
+    def _moments(self, measure: Measure) -> Moment:
+        """Return the moments of the values alone, and note why a value has none."""
+        values, history = self.spread.values, self.history
         near = through_x.moment_at(values, measure, history, side="nearer", outside="nan")
         far = near
         if measure.moment_of is None:
             far = through_x.moment_at(values, measure, history, side="farther", outside="nan")
-        self.history = history
-        self.source, self.values, self.side = measure, values, side
-        self.reasons: dict[int, str] = {}
-        asked = ~np.isnan(numbers)
+        asked = ~np.isnan(values)
         low, high = inverse.range_of(measure, history)
         for position in np.flatnonzero(asked & np.isnan(near.x)).tolist():
             value = float(values[position])
             self.reasons[position] = _why_outside(value, measure, low, high, history)
-        chosen = far if side == "farther" else near
-        if side is None:
-            several = far.x > near.x
-            for position in np.flatnonzero(several).tolist():
-                answers = [number_text(float(m.redshift[position])) for m in (near, far)]
-                self.reasons[position] = (
-                    f"two epochs have this {measure.name}, at redshift {answers[0]} and "
-                    f"{answers[1]}; choose with --side nearer or --side farther"
+        if self.side is not None:
+            return far if self.side == "farther" else near
+        several = far.x > near.x
+        for position in np.flatnonzero(several).tolist():
+            answers = [number_text(float(m.redshift[position])) for m in (near, far)]
+            self.reasons[position] = (
+                f"two epochs have this {measure.name}, at redshift {answers[0]} and "
+                f"{answers[1]}; choose with --side nearer or --side farther"
+            )
+        return Moment(x=np.where(several, np.nan, near.x)) if np.any(several) else near
+
+    def _image(self, target: Measure) -> Image:
+        """Return the target's values and intervals; without errors, the values alone."""
+        source = self.source.heading.measure
+        if not self.source.has_errors:
+            if target is source:
+                values = np.where(np.isnan(self.moment.x), np.nan, self.spread.values)
+            else:
+                values = through_x.values_at(self.moment, target, self.history, outside="nan")
+            nothing = np.full(len(values), np.nan)
+            never = np.zeros(len(values), dtype=bool)
+            return Image(values, nothing, nothing, never, never)
+        known = np.where(np.isnan(self.moment.x), np.nan, self.spread.values)
+        spread = self.spread._replace(values=known)
+        side = self.side or "nearer"
+        if target is source:
+            return intervals.image(spread, source, target, self.history, side=side, outside="nan")
+        if self._span is None:
+            self._span = intervals.span_at(spread, source, self.history, side=side, outside="nan")
+        return intervals.image_of(self._span, target, self.history, outside="nan")
+
+    def _limits(
+        self, target: Measure, values: FloatArray, reasons: dict[int, str]
+    ) -> dict[int, str]:
+        """Return the signs of limits in the target, flipped where the map falls."""
+        signs = {p: s for p, s in self.source.limits.items() if not np.isnan(values[p])}
+        if not signs:
+            return {}
+        source = self.source.heading.measure
+        directions = _direction(source, self.history) * _direction(target, self.history)
+        if directions == 0:
+            for position in signs:
+                values[position] = np.nan
+                reasons[position] = (
+                    f"a limit, which {target.name} is not one-sided for, since its map turns over"
                 )
-            if np.any(several):
-                chosen = Moment(x=np.where(several, np.nan, near.x))
-        self.moment = chosen
+            return {}
+        return signs if directions > 0 else {p: _FLIPPED[s] for p, s in signs.items()}
 
-    def under(self, history: ExpansionHistory) -> Moments:
-        """Return the moments of the same column under another history."""
-        return Moments(self.values, self.source, unit_named(self.source.unit), history, self.side)
 
-    def column(self, measure: Measure, unit: Unit) -> tuple[FloatArray, dict[int, str]]:
-        """Return a measure at the moments, in `unit`, and the reasons where it does not exist.
+def _direction(measure: Measure, history: ExpansionHistory) -> int:
+    """Return 1 for a measure that rises with redshift, -1 where it falls, 0 where it turns."""
+    if inverse.turning_points(measure, history):
+        return 0
+    near, far = measure.value_at(Moment(redshift=np.array([0.5, 1.0])), history)
+    return 1 if far > near else -1
 
-        Values are NaN where there is no moment, or no value (then with a reason).
-        """
-        if measure is self.source:
-            values = np.where(np.isnan(self.moment.x), np.nan, self.values)
-        else:
-            values = through_x.values_at(self.moment, measure, self.history, outside="nan")
-        values = values * factor(unit_named(measure.unit), unit)
-        missing = np.flatnonzero(np.isnan(values) & ~np.isnan(self.moment.x))
-        return values, dict.fromkeys(missing.tolist(), f"{measure.name} {measure.missing}")
+
+def _scale(heading: Heading, history: ExpansionHistory) -> float:
+    """Return what a number under a heading is multiplied by to be in the measure's own unit.
+
+    A column in h^-1 Mpc holds the distance times h; h is that of the history.
+    """
+    own = unit_named(heading.measure.unit)
+    return factor(heading.unit, own) * (history.hubble_constant / 100.0) ** heading.h_power
 
 
 def _why_outside(

@@ -12,7 +12,7 @@ from workbook_tools.column_widths import column_style
 from workbook_tools.number_formats import format_for, significant_digits
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import GENERAL, StyleSheet
-from workbook_tools.typed_cells import NUMBER, ColumnCells
+from workbook_tools.typed_cells import LIMIT, NUMBER, ColumnCells
 
 _TEXT = "@"
 
@@ -69,6 +69,18 @@ class CellLooks:
         pairs = zip(models.tolist(), keeps.tolist(), strict=True)
         return array("q", [known[pair] for pair in pairs])
 
+    def of_texts(
+        self, column: int, positions: NDArray[np.intp], target: ColumnCells | None
+    ) -> list[int]:
+        """Return the style of each new text of a column: the cell's, or its row's source's."""
+        if self.styles is None:
+            return [0] * len(positions)
+        models = np.maximum(np.array(self.source.styles)[positions], 0)
+        if target is not None:
+            own, _ = self._own_look(column, target, GENERAL)
+            models = np.where(own[positions] > 0, own[positions], models)
+        return [int(one) for one in models]
+
     def of_heading(self, column: int) -> int:
         """Return the style of the last heading up to a column, 0 where there is none."""
         assert self.reading.header_index is not None
@@ -110,6 +122,6 @@ def _typical_digits(source: ColumnCells) -> int:
     digits = sorted(
         significant_digits(source.numbers[p])
         for p, kind in enumerate(source.kinds[:1000])
-        if kind == NUMBER
+        if kind in (NUMBER, LIMIT)
     )
     return digits[len(digits) // 2] if digits else 1

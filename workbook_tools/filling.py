@@ -7,21 +7,22 @@ from collections.abc import Iterable, Iterator, Mapping, Sequence
 from dataclasses import dataclass, field
 from datetime import datetime
 from pathlib import Path
-from typing import BinaryIO
+from typing import BinaryIO, Unpack
 
 from epochconv.history import ExpansionHistory
 from epochconv.published import history_of
 from workbook_tools import sheet_edits
 from workbook_tools.archive import Archive
 from workbook_tools.dependents import Dependents, readers_of
-from workbook_tools.errors import Refusal, UsageError
-from workbook_tools.headings import same_heading
+from workbook_tools.errors import Refusal
 from workbook_tools.open_workbook import OpenWorkbook
 from workbook_tools.parts import recalculate_on_load
 from workbook_tools.placement import prepare
-from workbook_tools.plan import SheetPlan, plan_columns, plan_sheet
-from workbook_tools.request import Request
+from workbook_tools.plan import plan_columns
+from workbook_tools.plan_of_workbook import check_protection, plan_workbook
+from workbook_tools.request import Choices, Request, request_of
 from workbook_tools.safe_replace import put_in_place
+from workbook_tools.sheet_plan import SheetPlan
 from workbook_tools.splice import Edit, EditKind, spliced
 from workbook_tools.tables import grow
 
@@ -71,17 +72,9 @@ def fill(
     path: str | Path,
     *,
     output: str | Path | None = None,
-    sheet: str | None = None,
-    header_row: int | None = None,
-    add: Sequence[str] = (),
-    only: Sequence[str] = (),
-    source: str | None = None,
-    source_measure: str | None = None,
-    parameters: ExpansionHistory | str | None = None,
-    side: str | None = None,
-    allow_protected: bool = False,
     ignore_lock: bool = False,
     now: datetime | None = None,
+    **choices: Unpack[Choices],
 ) -> FillResult:
     """Fill the columns of a log that its headings ask for, and change nothing else.
 
@@ -89,36 +82,18 @@ def fill(
         path: the workbook (.xlsx, .xlsm, .xltx, .xltm).
         output: a new file for the result; without it the workbook is replaced in one step and a
             dated copy of the old one is kept beside it (the last five of them).
-        sheet: name of the sheet; by default every visible one that has something to fill.
-        header_row: number of the row of headings; by default it is found.
-        add: headings of columns to append at the right edge of the data, such as "Age [Gyr]".
-        only: headings of the existing columns to fill; by default all that are recognised.
-        source: heading of the column to convert from, or its letters as "C:C".
-        source_measure: what that column holds, whatever its heading says: "redshift", "age [Gyr]".
-        parameters: an ExpansionHistory or the name of a parameter set; by default "planck 2018".
-        side: "nearer" or "farther" where the source's map turns over.
-        allow_protected: fill protected sheets too.
         ignore_lock: go on though an owner file says that somebody has the workbook open.
         now: local time, for the name of the dated copy.
+        choices: what to fill and how to read it; see `workbook_tools.Choices`.
 
     Raises:
         UsageError: the request is ambiguous or names what is not there.
         Refusal: the workbook cannot be filled without harm; the file is untouched.
-        ArgumentError: no such parameter set.
+        ArgumentError: no such parameter set, or an error term that it or the source lacks.
     """
-    request = Request(
-        history=history_of(parameters),
-        sheet=sheet,
-        header_row=header_row,
-        add=tuple(add),
-        only=tuple(only),
-        source=source,
-        source_measure=source_measure,
-        side=side,
-        allow_protected=allow_protected,
-    )
+    request = request_of(**choices)
     task = _Task(Path(path), output, ignore_lock, now)
-    plans, notes = _plans(task.workbook, request)
+    plans, notes = plan_workbook(task.workbook, request)
     return task.carry_out(plans, request.history, notes)
 
 
@@ -144,58 +119,10 @@ def write_columns(
     """
     task = _Task(Path(path), output, False, now)
     (named,) = task.workbook.sheets(sheet)
-    reading = task.workbook.reading(named, None)
-    _check_protection(task.workbook, [SheetPlan(reading)], allow_protected)
+    reading = task.workbook.reading(named, Request(history_of(None)))
+    check_protection(task.workbook, [SheetPlan(reading)], allow_protected)
     plan = plan_columns(reading, columns, first_row, task.workbook.styles)
     return task.carry_out([plan], history_of(None), [])
-
-
-def _plans(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetPlan], list[str]]:
-    """Plan every sheet that is meant; return the plans that fill something, and notes."""
-    plans: list[SheetPlan] = []
-    notes: list[str] = []
-    headings: list[str] = []
-    for sheet in workbook.sheets(request.sheet):
-        reading = workbook.reading(sheet, request.header_row)
-        if request.source is None and not reading.headings:
-            continue
-        plan = plan_sheet(reading, request, workbook.styles)
-        notes += reading.lacking_units()
-        headings += [heading.text for heading in reading.headings.values()]
-        if plan.columns or plan.left or plan.notes:
-            plans.append(plan)
-            workbook.hold(sheet.part, reading.scan.xml)
-    for text in request.only:
-        if not any(same_heading(text, heading) for heading in headings):
-            raise UsageError(
-                f"--only {text!r} is no heading of {workbook.label} that can be filled; name one as"
-                " it stands, such as 'Age [Gyr]'"
-            )
-    several = [plan.reading.sheet.name for plan in plans if plan.columns or plan.left]
-    if request.add and request.sheet is None and len(several) > 1:
-        listed = ", ".join(map(repr, several))
-        raise UsageError(f"--add fits several sheets ({listed}); name one with --sheet")
-    if request.source is not None and not plans:
-        raise UsageError(
-            f"no sheet of {workbook.label} has a column {request.source!r} with something to"
-            " convert; name a heading as it stands, or letters such as C:C"
-        )
-    if request.add and not plans:
-        raise UsageError(
-            f"{workbook.label} has no column to convert from that is recognised; name one with"
-            " --source, such as --source C:C --as redshift"
-        )
-    _check_protection(workbook, plans, request.allow_protected)
-    return plans, notes
-
-
-def _check_protection(workbook: OpenWorkbook, plans: list[SheetPlan], allowed: bool) -> None:
-    for plan in plans:
-        if not allowed and workbook.is_protected(plan.reading):
-            raise Refusal(
-                f"sheet {plan.reading.sheet.name!r} is protected; ask its owner, or fill it all the"
-                " same with --allow-protected"
-            )
 
 
 class _Task:

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import functools
+from collections.abc import Callable
 from pathlib import Path
 
 from workbook_tools.archive import Archive
@@ -10,11 +11,13 @@ from workbook_tools.cell_address import Range
 from workbook_tools.errors import Refusal, UsageError
 from workbook_tools.parts import Sheet, SheetKind, SheetState, read_workbook, table_parts
 from workbook_tools.relations import Named, relations_of
-from workbook_tools.shared_strings import SharedStrings
-from workbook_tools.sheet_reading import Context, SheetReading
+from workbook_tools.request import Request
+from workbook_tools.shared_strings import SharedStrings, TypedText
+from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.styles import StyleSheet
 from workbook_tools.tables import Table, read_table
+from workbook_tools.typed_cells import CellRules
 from workbook_tools.written_values import range_in
 from workbook_tools.xml_offsets import parse
 
@@ -28,15 +31,18 @@ class OpenWorkbook:
         styles: the style sheet, None where the workbook has none.
     """
 
-    def __init__(self, path: Path) -> None:
+    def __init__(self, path: Path, *, keeps_readings: bool = False) -> None:
         """Open a workbook.
 
+        Args:
+            keeps_readings: whether a sheet that is asked for again is not read again.
         Raises:
             Refusal: it is none, or one that cannot be filled without harm.
         """
         self.archive = Archive.open(path)
         self.label = self.archive.label
         self._large: dict[str, bytes] = {}
+        self._readings: dict[str, SheetReading] | None = {} if keeps_readings else None
         self.map = read_workbook(self.archive)
         part = self.map.styles_part
         self.styles = None if part is None else StyleSheet(self.archive.read(part), part)
@@ -75,17 +81,31 @@ class OpenWorkbook:
             raise Refusal(f"sheet {name!r} is a {named[0].kind} and holds no cells to fill")
         return named
 
-    def reading(self, sheet: Sheet, header_row: int | None) -> SheetReading:
+    def reading(self, sheet: Sheet, request: Request) -> SheetReading:
         """Read one sheet as a log.
 
         Raises:
             Refusal: the sheet or one of its tables cannot be read.
             UsageError: the header row that is given holds nothing.
         """
+        if self._readings is not None and sheet.part in self._readings:
+            return self._readings[sheet.part]
         scan = SheetScan(self.archive.read(sheet.part), sheet.part)
-        return SheetReading(
-            sheet, scan, self._tables(sheet), self._pivots(sheet), self._context, header_row
+        rules = CellRules(
+            self._text_of,
+            self._style_test(StyleSheet.is_date),
+            self._style_test(StyleSheet.is_percent),
+            self._style_test(StyleSheet.is_struck),
+            decimal_comma=request.decimal_comma,
+            brackets_are_notes=request.brackets_are_notes,
+            missing=frozenset(request.missing),
         )
+        reading = SheetReading(
+            sheet, scan, self._tables(sheet), self._pivots(sheet), rules, request.header_row
+        )
+        if self._readings is not None:
+            self._readings[sheet.part] = reading
+        return reading
 
     def is_protected(self, reading: SheetReading) -> bool:
         """Tell whether a sheet is protected against changes."""
@@ -93,25 +113,24 @@ class OpenWorkbook:
         return protection is not None and protection.flag("sheet")
 
     @functools.cached_property
-    def _context(self) -> Context:
-        return Context(self._text_of, self._is_date)
-
-    @functools.cached_property
     def _strings(self) -> SharedStrings | None:
         part = self.map.shared_strings_part
         return None if part is None else SharedStrings(self.archive.read(part), part)
 
-    def _text_of(self, number: int) -> str:
+    def _text_of(self, number: int) -> TypedText:
         strings = self._strings
         if strings is None:
             raise Refusal(
                 f"{self.label}: a cell shows text number {number}, but the workbook has no list of"
                 " texts; open it in its own program, let it repair the file and save it again"
             )
-        return strings[number].text
+        return strings[number]
 
-    def _is_date(self, style: int) -> bool:
-        return self.styles is not None and self.styles.is_date(style)
+    def _style_test(self, test: Callable[[StyleSheet, int], bool]) -> Callable[[int], bool]:
+        styles = self.styles
+        if styles is None:
+            return lambda style: False
+        return functools.cache(lambda style: test(styles, style))
 
     def _tables(self, sheet: Sheet) -> list[Table]:
         return [

@@ -9,7 +9,7 @@ from epochconv.published import label_of, parameter_sets
 from workbook_tools.cell_address import column_letters
 from workbook_tools.dependents import Dependents
 from workbook_tools.filling import FillResult
-from workbook_tools.plan import FilledColumn, SheetPlan
+from workbook_tools.sheet_plan import FilledColumn, SheetPlan
 
 _FIRST_CELLS = 3
 _FIRST_REASONS = 12
@@ -19,7 +19,7 @@ def text_report(result: FillResult) -> str:
     """Return the short report: columns, reasons with their first cells, warnings, assumptions."""
     lines: list[str] = []
     for plan in result.plans:
-        lines += _sheet_lines(plan, result.dependents.get(plan.reading.sheet.name))
+        lines += sheet_lines(plan, result.dependents.get(plan.reading.sheet.name))
     if not result.filled:
         lines.append("nothing was waiting to be filled")
     lines += [f"note: {warning}" for warning in result.warnings]
@@ -45,15 +45,7 @@ def json_report(result: FillResult) -> dict[str, Any]:
         },
         "filled": result.filled,
         "sheets": [
-            {
-                "sheet": plan.reading.sheet.name,
-                "header_row": plan.reading.header_row,
-                "columns": [_column_data(column) for column in plan.columns],
-                "left": [{"cell": cell, "reason": reason} for cell, reason in plan.left],
-                "passed_over": plan.passed_over,
-                "notes": plan.notes,
-                "readers": _reader_data(result.dependents.get(plan.reading.sheet.name)),
-            }
+            sheet_data(plan, result.dependents.get(plan.reading.sheet.name))
             for plan in result.plans
         ],
         "left_by_reason": result.counts,
@@ -61,16 +53,32 @@ def json_report(result: FillResult) -> dict[str, Any]:
     }
 
 
-def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
+def sheet_data(plan: SheetPlan, dependents: Dependents | None) -> dict[str, Any]:
+    """Return what is done to a sheet as plain data."""
+    return {
+        "sheet": plan.reading.sheet.name,
+        "header_row": plan.reading.header_row,
+        "columns": [_column_data(column) for column in plan.columns],
+        "left": [{"cell": cell, "reason": reason} for cell, reason in plan.left],
+        "remarks": plan.remarks,
+        "passed_over": plan.passed_over,
+        "notes": plan.notes,
+        "readers": _reader_data(dependents),
+    }
+
+
+def sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
+    """Return what is done to a sheet as lines for people, its name in the first."""
     lines = [f"sheet {plan.reading.sheet.name!r}"]
     for column in plan.columns:
         if not column.count:
             continue
-        place = f"{column_letters(column.column)} {column.heading.text!r}"
+        place = f"{column_letters(column.column)} {column.text!r}"
         origin = f"{column_letters(column.source_column)} {column.source.text!r}"
         new = "new column " if column.added else ""
         cells_filled = "1 cell" if column.count == 1 else f"{column.count} cells"
-        lines.append(f"  {new}{place}: {cells_filled} filled from {origin}")
+        limits = f", {column.limits} of them limits" if column.limits else ""
+        lines.append(f"  {new}{place}: {cells_filled} filled from {origin}{limits}")
     cells: dict[str, list[str]] = {}
     for cell, reason in plan.left:
         cells.setdefault(reason, []).append(cell)
@@ -85,9 +93,11 @@ def _sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
         )
     if plan.passed_over:
         lines.append(
-            f"  passed over {len(plan.passed_over)}: formulas over other cells, no rows of the log"
-            f" ({_first(plan.passed_over)})"
+            f"  passed over {len(plan.passed_over)}: lines of totals or repeated headings, no rows"
+            f" of the log ({_first(plan.passed_over)})"
         )
+    for remark, where in plan.remarks.items():
+        lines.append(f"  read {len(where)}: {remark} ({_first(where)})")
     lines += [f"  note: {note}" for note in plan.notes]
     if dependents:
         lines.append(f"  these read filled cells and may show old results: {_readers(dependents)}")
@@ -122,13 +132,15 @@ def _first(cells: Iterable[str]) -> str:
 def _column_data(column: FilledColumn) -> dict[str, Any]:
     return {
         "column": column_letters(column.column),
-        "heading": column.heading.text,
+        "heading": column.text,
+        "holds": column.holds,
         "measure": column.heading.measure.name,
         "unit": column.heading.unit.symbol,
         "source_column": column_letters(column.source_column),
         "source_measure": column.source.measure.name,
         "source_unit": column.source.unit.symbol,
         "filled": column.count,
+        "limits": column.limits,
         "added": column.added,
     }
 

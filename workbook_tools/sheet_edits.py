@@ -24,7 +24,7 @@ class NewCells:
     Attributes:
         column: counted from 1.
         rows, numbers, styles: row number, value and format of each number.
-        heading: row, text and style of a heading to be written, or None.
+        texts: text and style of each cell with a text, such as the heading, by row.
         width: of a new column, in characters; None leaves the widths alone.
     """
 
@@ -32,13 +32,13 @@ class NewCells:
     rows: array[int] = field(default_factory=lambda: array("q"))
     numbers: array[float] = field(default_factory=lambda: array("d"))
     styles: array[int] = field(default_factory=lambda: array("q"))
-    heading: tuple[int, str, int] | None = None
+    texts: dict[int, tuple[str, int]] = field(default_factory=dict)
     width: float | None = None
 
     @property
     def extent(self) -> Range:
         """The rectangle from the first to the last new cell."""
-        rows = [*([self.heading[0]] if self.heading else []), *self.rows[:1], *self.rows[-1:]]
+        rows = [*self.texts, *self.rows[:1], *self.rows[-1:]]
         return Range(min(rows), self.column, max(rows), self.column)
 
 
@@ -52,7 +52,7 @@ def edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
         Refusal: the extent or the columns of the sheet are written in a way that is none.
         ValueError: a cell would land on one that holds something (a bug of ours).
     """
-    new = sorted((one for one in new if one.rows or one.heading), key=lambda one: one.column)
+    new = sorted((one for one in new if one.rows or one.texts), key=lambda one: one.column)
     if not new:
         return
     widths = {one.column: one.width for one in new if one.width is not None}
@@ -122,14 +122,13 @@ def _blocks(new: list[NewCells], prefix: bytes) -> list[_Block]:
     return [_Block(group, prefix) for group in groups]
 
 
-def _headings(new: list[NewCells], prefix: bytes) -> dict[int, list[tuple[int, bytes]]]:
-    """Return column and bytes of each heading, by row."""
+def _texts(new: list[NewCells], prefix: bytes) -> dict[int, list[tuple[int, bytes]]]:
+    """Return column and bytes of each text, by row."""
     found: dict[int, list[tuple[int, bytes]]] = {}
     p = prefix
     for one in new:
-        if one.heading is not None:
-            row, text, style = one.heading
-            address = column_letters(one.column).encode()
+        address = column_letters(one.column).encode()
+        for row, (text, style) in one.texts.items():
             cell = b'<%bc r="%b%d" s="%d" t="inlineStr"><%bis><%bt>%b</%bt></%bis></%bc>' % (
                 *(p, address, row, style),
                 *(p, p, escape_text(text).encode(), p, p, p),
@@ -140,9 +139,9 @@ def _headings(new: list[NewCells], prefix: bytes) -> dict[int, list[tuple[int, b
 
 def _row_edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
     prefix = scan.data.prefix.encode() + b":" if scan.data.prefix else b""
-    blocks, headings = _blocks(new, prefix), _headings(new, prefix)
+    blocks, texts = _blocks(new, prefix), _texts(new, prefix)
     parts = [np.array(block.rows, dtype=np.int64) for block in blocks]
-    rows = np.unique(np.concatenate([*parts, np.array(list(headings), dtype=np.int64)]))
+    rows = np.unique(np.concatenate([*parts, np.array(list(texts), dtype=np.int64)]))
     spans = _SpansEdits(scan)
     missing: list[bytes] = []
     index, count, numbers = 0, len(scan), scan.numbers
@@ -157,7 +156,7 @@ def _row_edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
         if there and missing:
             yield _inserted_rows(scan, index, missing)
             missing = []
-        if there and len(busy) == 1 and row not in headings:
+        if there and len(busy) == 1 and row not in texts:
             (block,) = busy
             if scan.ends[index] > scan.tag_ends[index] and (
                 scan.last_columns[index] < block.columns[0]
@@ -168,7 +167,7 @@ def _row_edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
                 position = scan.end_of_cells(index)
                 yield Edit(EditKind.CELL_INSERTED, position, position, block.next_together())
                 continue
-        cells = [cell for block in busy for cell in block.next_apart()] + headings.get(row, [])
+        cells = [cell for block in busy for cell in block.next_apart()] + texts.get(row, [])
         cells.sort(key=lambda cell: cell[0])
         if there:
             yield from _edits_of_row(scan, index, cells, spans)
@@ -203,7 +202,11 @@ def _edits_of_row(
         yield widened
     tag_end = scan.tag_ends[index]
     if scan.ends[index] > tag_end:
-        yield from _edits_among_cells(scan, index, cells)
+        if scan.last_columns[index] >= cells[0][0]:
+            yield from _edits_among_cells(scan, index, cells)
+            return
+        end = scan.end_of_cells(index)
+        yield Edit(EditKind.CELL_INSERTED, end, end, b"".join(cell for _, cell in cells))
         return
     closing = b"</%brow>" % (scan.data.prefix.encode() + b":" if scan.data.prefix else b"")
     body = b"".join(cell for _, cell in cells)

@@ -1,30 +1,50 @@
-"""What a sheet holds, read once: its header row, what headings mean, which rows are the log."""
+"""What a sheet holds, read once: its header rows, what columns mean, which rows are the log."""
 
 from __future__ import annotations
 
-from collections.abc import Callable, Iterable, Sequence
+from collections.abc import Iterable, Mapping, Sequence
 from dataclasses import dataclass
 
+import numpy as np
+
 from workbook_tools.cell_address import Range, column_letters
-from workbook_tools.column_meanings import Heading
+from workbook_tools.column_meanings import Heading, Meaning, Role
 from workbook_tools.errors import UsageError
-from workbook_tools.headings import lacks_unit, read_heading
+from workbook_tools.header_rows import holds_units, read_headings
+from workbook_tools.headings import lacks_unit, meaning_of
 from workbook_tools.parts import Sheet
 from workbook_tools.sheet_scan import SheetScan, attributes_of
 from workbook_tools.tables import Table
-from workbook_tools.typed_cells import NOT_READ, NUMBER, ColumnCells, read_columns, shown_text
+from workbook_tools.typed_cells import (
+    NOT_READ,
+    NUMBER,
+    CellRules,
+    ColumnCells,
+    read_columns,
+    shown_text,
+)
 from workbook_tools.written_values import range_in
 
 # A header row stands near the top: above it are titles, contacts, remarks.
 _ROWS_SEARCHED = 200
+# Redshifts are hardly ever that high, and magnitudes hardly ever that low.
+_LIKE_MAGNITUDES = 10.0
 
 
 @dataclass(frozen=True)
-class Context:
-    """What the sheets of a workbook share: texts and the meaning of formats."""
+class HeaderBlock:
+    """The rows of headings, by index in the scan.
 
-    text_of: Callable[[int], str]
-    is_date: Callable[[int], bool]
+    Attributes:
+        names: the row of names.
+        last: the row of units below them, or the names again.
+        rows: texts by column of groups, names and units, as far as there are such rows; the text
+            of a merged cell stands in each of its columns.
+    """
+
+    names: int
+    last: int
+    rows: tuple[Mapping[int, str], ...]
 
 
 class SheetReading:
@@ -34,9 +54,10 @@ class SheetReading:
         sheet, scan, tables: what it was read from.
         blocked: rectangles into which nothing may be written: merged cells, array formulas and
             data tables, pivot tables.
-        header_index: index of the header row in the scan, None where none was found.
+        header: the rows of headings, None where none were found.
         texts: text of each heading, by column.
-        headings: what is recognised among them, by column.
+        meanings: what each column is taken for.
+        headings: what the columns of values hold.
         rows: indices of the rows below the header that belong to the log.
     """
 
@@ -46,7 +67,7 @@ class SheetReading:
         scan: SheetScan,
         tables: Sequence[Table],
         pivots: Sequence[Range],
-        context: Context,
+        rules: CellRules,
         header_row: int | None,
     ) -> None:
         """Read a sheet.
@@ -57,31 +78,47 @@ class SheetReading:
         self.sheet = sheet
         self.scan = scan
         self.tables = tables
-        self.blocked = [*_merged(scan), *_arrays(scan), *pivots]
-        self._context = context
+        self._merged = _merged(scan)
+        self.blocked = [*self._merged, *_arrays(scan), *pivots]
+        self._rules = rules
         self._known: dict[int, ColumnCells] = {}
         self.rows = range(0)
-        self.header_index, self.texts = self._find_header(header_row)
-        self.headings: dict[int, Heading] = {}
-        for column, text in self.texts.items():
-            heading = read_heading(text)
-            if heading is not None:
-                self.headings[column] = heading
-        self._limit_rows()
+        self._take_header(self._find_header(header_row))
+
+    @property
+    def header_index(self) -> int | None:
+        """Index of the row of names in the scan, None where none was found."""
+        return None if self.header is None else self.header.names
 
     @property
     def header_row(self) -> int | None:
-        """Number of the header row, None where none was found."""
-        return None if self.header_index is None else self.scan.numbers[self.header_index]
+        """Number of the row of names, None where none was found."""
+        return None if self.header is None else self.scan.numbers[self.header.names]
 
     def columns(self, wanted: Sequence[int]) -> list[ColumnCells]:
         """Return the cells of columns in the rows of the log, each read once."""
         unread = [column for column in wanted if column not in self._known]
         if unread:
-            self._known |= read_columns(
-                self.scan, unread, self.rows, self._context.text_of, self._context.is_date
-            )
+            self._known |= read_columns(self.scan, unread, self.rows, self._rules, self._names_of)
         return [self._known[column] for column in wanted]
+
+    def companion(self, column: int, role: Role) -> int | None:
+        """Return the companion of that role which belongs to a column, None where it has none."""
+        return next(
+            (c for c, one in self.meanings.items() if one.owner == column and one.role is role),
+            None,
+        )
+
+    def texts_of(self, column: int) -> dict[int, str]:
+        """Return the texts of a column's cells, by position in the rows of the log."""
+        texts = {}
+        for position, index in enumerate(self.rows):
+            for cell in self.scan.cells(index):
+                if cell.column == column and not self.scan.is_empty(cell):
+                    text = shown_text(self.scan, cell, self._rules).text
+                    if text.strip():
+                        texts[position] = text
+        return texts
 
     def table_of(self, column: int) -> Table | None:
         """Return the table that holds the header row at that column, None where none does."""
@@ -96,17 +133,15 @@ class SheetReading:
         Without such a row the numbers stand without a heading, and the log begins at the first.
         """
         everything = range(len(self.scan))
-        cells = read_columns(
-            self.scan, [column], everything, self._context.text_of, self._context.is_date
-        )[column]
+        cells = read_columns(self.scan, [column], everything, self._rules, self._names_of)[column]
         first = next((i for i in everything if cells.kinds[i] == NUMBER), None)
         if first is None:
             return
         above = [i for i, why in cells.reasons.items() if i < first and why.startswith(NOT_READ)]
-        self.header_index = max(above) if above else None
-        self.texts = self._row_texts(self.header_index) if self.header_index is not None else {}
-        self.rows = range(first, len(self.scan))
-        self._limit_rows()
+        if above:
+            self._take_header(self._block(max(above)))
+        else:
+            self.rows = range(first, len(self.scan))
 
     def lacking_units(self) -> list[str]:
         """Return sentences about headings that name a measure but lack the unit it needs."""
@@ -136,39 +171,108 @@ class SheetReading:
         cells = self.scan.cells(index)
         return max((c.column for c in cells if not self.scan.is_empty(c)), default=0)
 
+    def _names_of(self, column: int) -> frozenset[str]:
+        """Return what a column's quantity may be called inside its cells."""
+        heading = self.headings.get(column)
+        if heading is None:
+            return frozenset()
+        measure = heading.measure
+        return frozenset((measure.name, measure.symbol, heading.name, *measure.aliases))
+
     def _row_texts(self, index: int) -> dict[int, str]:
         texts = {}
         for cell in self.scan.cells(index):
             if cell.type in ("s", "inlineStr", "str") and not self.scan.is_empty(cell):
-                text = shown_text(self.scan, cell, self._context.text_of)
+                text = shown_text(self.scan, cell, self._rules).text
                 if text.strip():
                     texts[cell.column] = text
         return texts
 
-    def _find_header(self, header_row: int | None) -> tuple[int | None, dict[int, str]]:
+    def _find_header(self, header_row: int | None) -> HeaderBlock | None:
         if header_row is not None:
             index = next((i for i, n in enumerate(self.scan.numbers) if n == header_row), None)
-            texts = self._row_texts(index) if index is not None else {}
-            if not texts:
+            if index is None or not self._row_texts(index):
                 raise UsageError(
                     f"row {header_row} of sheet {self.sheet.name!r} holds no headings; name the row"
                     " in which they stand with --header-row, and its sheet with --sheet"
                 )
-            return index, texts
-        best, best_texts, most = None, dict[int, str](), 0
+            return self._block(index)
+        best, most = None, 0
         for index in range(min(len(self.scan), _ROWS_SEARCHED)):
-            texts = self._row_texts(index)
-            found = sum(read_heading(text) is not None for text in texts.values())
+            found = sum(_likeness(text) for text in self._row_texts(index).values())
             if found > most:
-                best, best_texts, most = index, texts, found
-        return best, best_texts
+                best, most = index, found
+        return None if best is None else self._block(best)
+
+    def _block(self, names: int) -> HeaderBlock:
+        """Return the header rows around a row of names."""
+        texts = self._row_texts(names)
+        rows: list[Mapping[int, str]] = [texts]
+        last = names
+        numbers = self.scan.numbers
+        if names + 1 < len(self.scan) and numbers[names + 1] == numbers[names] + 1:
+            below = self._row_texts(names + 1)
+            if below and holds_units(below):
+                rows.append(below)
+                last = names + 1
+        if names > 0 and numbers[names - 1] == numbers[names] - 1:
+            above = self._groups(names - 1, texts)
+            if above:
+                rows.insert(0, above)
+        return HeaderBlock(names, last, tuple(rows))
+
+    def _groups(self, index: int, names: Mapping[int, str]) -> dict[int, str]:
+        """Return the texts of a row of groups over their columns; titles are no groups."""
+        row = self.scan.numbers[index]
+        spread: dict[int, str] = {}
+        for column, text in self._row_texts(index).items():
+            area = next((one for one in self._merged if one.contains(row, column)), None)
+            reach = range(column, column + 1) if area is None else _columns(area)
+            upright = area is not None and area.height > 1
+            if upright or 1 < len(reach) < max(len(names), 3):
+                spread.update(dict.fromkeys(reach, text))
+        return spread
+
+    def _take_header(self, header: HeaderBlock | None) -> None:
+        self.header = header
+        self._known.clear()
+        self.meanings: dict[int, Meaning] = {}
+        self.headings: dict[int, Heading] = {}
+        self.texts: dict[int, str] = {}
+        if header is None:
+            return
+        names = self._row_texts(header.names)
+        above = header.rows[0] if header.rows[0] is not names else {}
+        self.texts = {c: t for c, t in above.items() if c not in names} | names
+        self._give_meanings(read_headings(header.rows))
+        self._limit_rows()
+        magnitudes = [c for c in self.headings if self._looks_like_magnitudes(c)]
+        if magnitudes:
+            self._known.clear()
+            self._give_meanings(read_headings(header.rows, magnitudes))
+
+    def _give_meanings(self, meanings: dict[int, Meaning]) -> None:
+        self.meanings = meanings
+        self.headings = {
+            column: meaning.heading
+            for column, meaning in meanings.items()
+            if meaning.role is Role.VALUE and meaning.heading is not None
+        }
+
+    def _looks_like_magnitudes(self, column: int) -> bool:
+        heading = self.headings[column]
+        if heading.measure.name != "redshift" or heading.name != "z":
+            return False
+        (cells,) = self.columns([column])
+        held = np.frombuffer(cells.kinds, dtype=np.uint8) == NUMBER
+        numbers = np.array(cells.numbers)[held]
+        return len(numbers) > 0 and float(np.median(numbers)) > _LIKE_MAGNITUDES
 
     def _limit_rows(self) -> None:
         """Set the rows of the log: those of the header's table, or all down to a table below."""
-        if self.header_index is None:
-            return
-        start = self.header_index + 1
-        header = self.scan.numbers[self.header_index]
+        assert self.header is not None
+        start = self.header.last + 1
+        header = self.scan.numbers[self.header.names]
         columns = list(self.headings) or list(self.texts)
         table = next((t for t in map(self.table_of, columns) if t is not None), None)
         last = table.data.last_row if table is not None else None
@@ -184,6 +288,17 @@ class SheetReading:
         if last is not None:
             stop = next((i for i in range(start, stop) if self.scan.numbers[i] > last), stop)
         self.rows = range(start, stop)
+
+
+def _likeness(text: str) -> int:
+    """Return how much a text speaks for a row of headings."""
+    if meaning_of(text).role is Role.VALUE:
+        return 2
+    return 1 if lacks_unit(text) is not None else 0
+
+
+def _columns(area: Range) -> range:
+    return range(area.first_column, area.last_column + 1)
 
 
 def _merged(scan: SheetScan) -> list[Range]:

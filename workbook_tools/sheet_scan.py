@@ -16,7 +16,7 @@ from typing import NamedTuple
 
 from workbook_tools.cell_address import MAX_COLUMN, MAX_ROW, column_number
 from workbook_tools.errors import Refusal
-from workbook_tools.shared_strings import read_text
+from workbook_tools.shared_strings import TypedText, read_text
 from workbook_tools.written_values import whole_number
 from workbook_tools.xml_offsets import Element, check_well_formed, parse, unescape
 
@@ -234,10 +234,10 @@ class SheetScan:
         match = self._value.search(self.plain, cell.tag_end, cell.end)
         return None if match is None else _decoded(match[2])
 
-    def inline_text(self, cell: CellSpan) -> str:
+    def inline_text(self, cell: CellSpan) -> TypedText:
         """Return the text of an inline string, its runs joined and phonetic hints left out."""
         match = self._inline.search(self.plain, cell.tag_end, cell.end)
-        return "" if match is None else read_text(self.xml[match.start() : match.end()]).text
+        return TypedText("") if match is None else read_text(self.xml[match.start() : match.end()])
 
     def formula(self, cell: CellSpan) -> str | None:
         """Return the formula text of a cell, None for none.

@@ -91,6 +91,30 @@ class StyleSheet:
             return True
         return bool(is_date_format(self._code(number)))
 
+    def is_percent(self, style: int) -> bool:
+        """Tell whether a style shows numbers in percent.
+
+        Raises:
+            Refusal: there is no such style.
+        """
+        return "%" in self.format_code(style)
+
+    def is_struck(self, style: int) -> bool:
+        """Tell whether a style strikes its letters through.
+
+        Raises:
+            Refusal: there is no such style.
+        """
+        fonts = self._root.find("fonts")
+        if fonts is None or len(self) == 0:
+            return False
+        number = self._style(style).attributes.get("fontId", "0")
+        listed = list(fonts.find_all("font"))
+        if not number.isdecimal() or int(number) >= len(listed):
+            return False
+        strike = listed[int(number)].find("strike")
+        return strike is not None and strike.flag("val", default=True)
+
     def wraps(self, style: int) -> bool:
         """Tell whether a style breaks long texts into lines.
 

@@ -1,7 +1,8 @@
-"""What the cells of a column hold: a number, nothing, or something that is left with a reason.
+"""What the cells of a column hold: a value, nothing, or something that is left with a reason.
 
-Read are number cells, text that is plainly a number, and the stored results of formulas. Whatever
-else stands in a cell is left and said why; no cell is guessed at.
+A number cell holds a value; so does text that the grammar of typed values reads (with its error,
+its limit, its unit), and the stored result of a formula. Whatever else stands in a cell is left and
+said why; no cell is guessed at.
 """
 
 from __future__ import annotations
@@ -9,15 +10,19 @@ from __future__ import annotations
 import math
 import re
 from array import array
-from collections.abc import Callable, Sequence
+from collections import Counter
+from collections.abc import Callable, Collection, Sequence
 from dataclasses import dataclass, field
 
-from epochconv.number_text import plain_number
+from epochconv.typed_outcomes import NoValue, Remark, Typed
+from epochconv.typed_text import read_typed
+from epochconv.units import Unit
 from workbook_tools.cell_address import column_letters
+from workbook_tools.shared_strings import TypedText
 from workbook_tools.sheet_scan import CellSpan, SheetScan
 from workbook_tools.written_values import whole_number
 
-ABSENT, EMPTY, WHITE, NUMBER, LEFT = range(5)
+ABSENT, EMPTY, WHITE, WORD, NUMBER, LIMIT, LEFT = range(7)
 
 # A formula that sums up a column stands in a line of totals, not in a row of the log; one that only
 # looks at cells of one row, such as the mean of two spectra, is a value like any other.
@@ -34,9 +39,33 @@ NOT_READ = "not read: "
 """What precedes a text in the reason why it is left."""
 
 SUMS_UP = "a formula over other cells, not a row of the log"
-_DATE = "a date, not a number; what was typed is lost"
+_DATE = "a date that a spreadsheet program made of something else, which is lost; type it again"
+_RAISED = "raised or lowered digits, which could be an exponent or a footnote; retype it"
 
-TextOf = Callable[[int], str]
+STRUCK = "struck through"
+FORMULA = "results of formulas, as last stored"
+TEXT = "numbers typed as text"
+
+
+@dataclass(frozen=True)
+class CellRules:
+    """How cells are read, beyond the grammar.
+
+    Attributes:
+        text_of: a shared text by its number.
+        is_date, is_percent, is_struck: what a style does with numbers and letters.
+        decimal_comma: whether commas are decimal marks.
+        brackets_are_notes: whether a bracket behind a number is a note.
+        missing: numbers that stand for "no value".
+    """
+
+    text_of: Callable[[int], TypedText]
+    is_date: Callable[[int], bool]
+    is_percent: Callable[[int], bool]
+    is_struck: Callable[[int], bool]
+    decimal_comma: bool = False
+    brackets_are_notes: bool = False
+    missing: frozenset[float] = frozenset()
 
 
 @dataclass
@@ -47,11 +76,16 @@ class ColumnCells:
         column: counted from 1.
         indices: indices of the rows in the scan.
         kinds: ABSENT (no element), EMPTY (an element that holds nothing), WHITE (a text without a
-            visible sign, which is nothing to read and nothing to overwrite), NUMBER or LEFT.
-        numbers: the value of each NUMBER cell; 0 elsewhere.
+            visible sign, which is nothing to read and nothing to overwrite), WORD (a word for "no
+            value"), NUMBER, LIMIT or LEFT.
+        numbers: the value of each NUMBER and LIMIT cell; 0 elsewhere.
         styles: the format of each cell; -1 where there is no element.
+        errors: lower and upper error typed with a value, by position.
+        limits: the sign of each LIMIT, by position.
+        units: the unit typed with a value, by position.
         reasons: why a LEFT cell is left, by position.
-        from_text, from_formulas: how many numbers were text, or results of formulas.
+        remarks: what a person should know of cells that were read, with their positions.
+        words: how often each word for "no value" stands.
     """
 
     column: int
@@ -59,9 +93,12 @@ class ColumnCells:
     kinds: bytearray
     numbers: array[float]
     styles: array[int]
+    errors: dict[int, tuple[float, float]] = field(default_factory=dict)
+    limits: dict[int, str] = field(default_factory=dict)
+    units: dict[int, Unit] = field(default_factory=dict)
     reasons: dict[int, str] = field(default_factory=dict)
-    from_text: int = 0
-    from_formulas: int = 0
+    remarks: dict[str, list[int]] = field(default_factory=dict)
+    words: Counter[str] = field(default_factory=Counter)
 
     def count(self, kind: int) -> int:
         """Return how many cells are of a kind."""
@@ -71,22 +108,27 @@ class ColumnCells:
         """Tell whether nothing stands in the cell."""
         return self.kinds[position] in (ABSENT, EMPTY)
 
+    def remark(self, text: str, position: int) -> None:
+        """Note something about a cell that was read."""
+        self.remarks.setdefault(text, []).append(position)
+
 
 def read_columns(
     scan: SheetScan,
     columns: Sequence[int],
     indices: range,
-    text_of: TextOf,
-    is_date: Callable[[int], bool],
+    rules: CellRules,
+    names_of: Callable[[int], Collection[str]],
 ) -> dict[int, ColumnCells]:
     """Read columns of a sheet in the given rows.
 
     Args:
         indices: indices of rows in the scan.
-        text_of: the shared string of a number.
-        is_date: whether a style shows numbers as dates.
+        names_of: what a column's quantity may be called inside a cell, as in `z=1.2`.
     """
-    readers = {column: _ColumnReader(scan, column, indices, text_of, is_date) for column in columns}
+    readers = {
+        column: _ColumnReader(scan, column, indices, rules, names_of(column)) for column in columns
+    }
     if scan.cells_regular:
         for reader in readers.values():
             reader.take_all()
@@ -98,18 +140,18 @@ def read_columns(
     return {column: reader.cells for column, reader in readers.items()}
 
 
-def shown_text(scan: SheetScan, cell: CellSpan, text_of: TextOf) -> str:
+def shown_text(scan: SheetScan, cell: CellSpan, rules: CellRules) -> TypedText:
     """Return what a cell holds as text, "" for nothing."""
     if cell.type == "inlineStr":
         return scan.inline_text(cell)
     value = scan.value_text(cell)
     if value is None:
-        return ""
+        return TypedText("")
     if cell.type == "s":
-        return text_of(whole_number(value, scan.part))
+        return rules.text_of(whole_number(value, scan.part))
     if cell.type == "b":
-        return "TRUE" if value.strip() == "1" else "FALSE"
-    return value
+        return TypedText("TRUE" if value.strip() == "1" else "FALSE")
+    return TypedText(value)
 
 
 class _ColumnReader:
@@ -120,13 +162,14 @@ class _ColumnReader:
         scan: SheetScan,
         column: int,
         indices: range,
-        text_of: TextOf,
-        is_date: Callable[[int], bool],
+        rules: CellRules,
+        names: Collection[str],
     ) -> None:
         self.scan = scan
-        self.text_of = text_of
-        self.is_date = is_date
-        self.dates: dict[int, bool] = {}
+        self.rules = rules
+        self.names = names
+        # Whether a style asks for a closer look: dates, percent, struck letters.
+        self.special: dict[int, bool] = {}
         count = len(indices)
         self.cells = ColumnCells(
             column,
@@ -142,6 +185,7 @@ class _ColumnReader:
         letters = column_letters(cells.column).encode()
         index, stop = cells.indices.start, cells.indices.stop
         kinds, numbers, styles, rows = cells.kinds, cells.numbers, cells.styles, scan.numbers
+        missing = self.rules.missing
         first = rows[index] if index < stop else 0
         for row, start, style, number in scan.plain_numbers(letters):
             if row < first:
@@ -153,12 +197,15 @@ class _ColumnReader:
             if rows[index] != row or not scan.starts[index] < start < scan.ends[index]:
                 raise scan.disordered(f"{letters.decode()}{row}")
             position = index - cells.indices.start
-            if number is None or not -math.inf < number < math.inf:
+            if (
+                number is None
+                or not -math.inf < number < math.inf
+                or number in missing
+                or self._is_special(style)
+            ):
                 cell = scan.find_cell(index, letters)
                 assert cell is not None  # it has just been seen there
                 self.take(position, cell)
-            elif self._shows_dates(style):
-                self._leave(position, style, _DATE)
             else:
                 kinds[position] = NUMBER
                 numbers[position] = number
@@ -172,45 +219,85 @@ class _ColumnReader:
             cells.kinds[position] = EMPTY
             return
         formula = self.scan.formula(cell)
-        text = shown_text(self.scan, cell, self.text_of)
-        if not text.strip() and (formula is None or cell.type == "str"):
+        typed = shown_text(self.scan, cell, self.rules)
+        is_text = cell.type in ("s", "inlineStr", "str")
+        if not typed.text.strip() and (formula is None or cell.type == "str"):
             cells.kinds[position] = WHITE
             return
-        found = self._number_or_reason(cell, formula, text)
-        if isinstance(found, str):
-            self._leave(position, cell.style, found)
+        reason = self._reason(cell, formula, typed)
+        if reason:
+            self._leave(position, reason)
             return
-        cells.kinds[position] = NUMBER
-        cells.numbers[position] = found
-        cells.from_text += cell.type in ("s", "inlineStr", "str")
-        cells.from_formulas += formula is not None
+        self._take_value(position, typed.text, is_text)
+        if cells.kinds[position] not in (NUMBER, LIMIT):
+            return
+        if formula is not None:
+            cells.remark(FORMULA, position)
+        if typed.struck or self.rules.is_struck(cell.style):
+            cells.remark(STRUCK, position)
+        if not is_text and self.rules.is_percent(cell.style):
+            cells.remark(Remark.PERCENT, position)
 
-    def _leave(self, position: int, style: int, reason: str) -> None:
+    def _take_value(self, position: int, text: str, is_text: bool) -> None:
         cells = self.cells
-        cells.kinds[position] = LEFT
-        cells.styles[position] = style
-        cells.reasons[position] = reason
+        found = read_typed(
+            text,
+            decimal_comma=self.rules.decimal_comma and is_text,
+            brackets_are_notes=self.rules.brackets_are_notes,
+            names=self.names,
+        )
+        if isinstance(found, NoValue):
+            if found.listed:
+                self._leave(position, f"no value yet: {_shortened(text)}")
+            else:
+                cells.kinds[position] = WORD
+                cells.words[found.word] += 1
+        elif not isinstance(found, Typed):
+            self._leave(position, f"{NOT_READ}{_shortened(text)} ({found.reason})")
+        elif found.value in self.rules.missing and not found.limit:
+            cells.kinds[position] = WORD
+            cells.words[_shortened(text)] += 1
+        else:
+            cells.kinds[position] = LIMIT if found.limit else NUMBER
+            cells.numbers[position] = found.value
+            if found.limit:
+                cells.limits[position] = found.limit
+            if found.lower_error is not None and found.upper_error is not None:
+                cells.errors[position] = (found.lower_error, found.upper_error)
+            if found.unit is not None:
+                cells.units[position] = found.unit
+            for remark in found.remarks:
+                cells.remark(remark, position)
+            if is_text and not (found.remarks or found.limit or position in cells.errors):
+                cells.remark(TEXT, position)
 
-    def _number_or_reason(self, cell: CellSpan, formula: str | None, text: str) -> float | str:
+    def _reason(self, cell: CellSpan, formula: str | None, typed: TypedText) -> str:
+        """Return why a cell is left without reading its text, "" for one that is to be read."""
         if formula is not None and _sums_up_rows(formula):
             return SUMS_UP
-        if not text.strip():
+        if not typed.text.strip():
             return "a formula without a stored result; recalculate and save the workbook first"
         if cell.type == "b":
-            return NOT_READ + text
+            return NOT_READ + typed.text
         if cell.type == "e":
-            return f"a formula error: {text}"
-        if cell.type == "d" or (cell.type == "n" and self._shows_dates(cell.style)):
+            return f"a formula error: {typed.text}"
+        if cell.type == "d" or (cell.type == "n" and self.rules.is_date(cell.style)):
             return _DATE
-        number = plain_number(text)
-        if number is None or not math.isfinite(number):
-            return NOT_READ + _shortened(text)
-        return number
+        if typed.shifted and any(letter.isdigit() for letter in typed.text):
+            return _RAISED
+        return ""
 
-    def _shows_dates(self, style: int) -> bool:
-        known = self.dates.get(style)
+    def _leave(self, position: int, reason: str) -> None:
+        self.cells.kinds[position] = LEFT
+        self.cells.reasons[position] = reason
+
+    def _is_special(self, style: int) -> bool:
+        known = self.special.get(style)
         if known is None:
-            known = self.dates[style] = self.is_date(style)
+            rules = self.rules
+            known = self.special[style] = (
+                rules.is_date(style) or rules.is_percent(style) or rules.is_struck(style)
+            )
         return known
 
 

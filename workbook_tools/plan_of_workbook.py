@@ -1,0 +1,68 @@
+"""What a fill will do to a workbook: the sheets that are meant, each with its plan."""
+
+from __future__ import annotations
+
+from workbook_tools.errors import Refusal, UsageError
+from workbook_tools.headings import same_heading
+from workbook_tools.open_workbook import OpenWorkbook
+from workbook_tools.plan import plan_sheet
+from workbook_tools.request import Request
+from workbook_tools.sheet_plan import SheetPlan
+
+
+def plan_workbook(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetPlan], list[str]]:
+    """Plan every sheet that is meant; return the plans that fill something, and notes.
+
+    Raises:
+        UsageError, Refusal, ArgumentError: as `plan_sheet`; also where the request fits no sheet
+            or several, or a sheet is protected.
+    """
+    plans: list[SheetPlan] = []
+    notes: list[str] = []
+    headings: list[str] = []
+    for sheet in workbook.sheets(request.sheet):
+        reading = workbook.reading(sheet, request)
+        if request.source is None and not reading.headings:
+            continue
+        plan = plan_sheet(reading, request, workbook.styles)
+        notes += reading.lacking_units()
+        headings += [heading.text for heading in reading.headings.values()]
+        if plan.columns or plan.left or plan.notes:
+            plans.append(plan)
+            workbook.hold(sheet.part, reading.scan.xml)
+    for text in request.only:
+        if not any(same_heading(text, heading) for heading in headings):
+            raise UsageError(
+                f"--only {text!r} is no heading of {workbook.label} that can be filled; name one as"
+                " it stands, such as 'Age [Gyr]'"
+            )
+    several = [plan.reading.sheet.name for plan in plans if plan.columns or plan.left]
+    if request.add and request.sheet is None and len(several) > 1:
+        listed = ", ".join(map(repr, several))
+        raise UsageError(f"--add fits several sheets ({listed}); name one with --sheet")
+    if request.source is not None and not plans:
+        raise UsageError(
+            f"no sheet of {workbook.label} has a column {request.source!r} with something to"
+            " convert; name a heading as it stands, or letters such as C:C"
+        )
+    if request.add and not plans:
+        raise UsageError(
+            f"{workbook.label} has no column to convert from that is recognised; name one with"
+            " --source, such as --source C:C --as redshift"
+        )
+    check_protection(workbook, plans, request.allow_protected)
+    return plans, notes
+
+
+def check_protection(workbook: OpenWorkbook, plans: list[SheetPlan], allowed: bool) -> None:
+    """Raise where a sheet that gets cells is protected.
+
+    Raises:
+        Refusal: it names the sheet.
+    """
+    for plan in plans:
+        if not allowed and workbook.is_protected(plan.reading):
+            raise Refusal(
+                f"sheet {plan.reading.sheet.name!r} is protected; ask its owner, or fill it all the"
+                " same with --allow-protected"
+            )

@@ -1,0 +1,67 @@
+"""What a fill does to one sheet, as plain data: the report and the edits are made from it alike."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass, field
+
+from workbook_tools.cell_address import Range
+from workbook_tools.column_meanings import Heading
+from workbook_tools.sheet_edits import NewCells
+from workbook_tools.sheet_reading import SheetReading
+from workbook_tools.tables import Table
+
+
+@dataclass(frozen=True)
+class FilledColumn:
+    """One column that gets values, errors or signs.
+
+    Attributes:
+        text: its heading.
+        heading: the values that it holds, or to which its errors or signs belong.
+        holds: "values", "errors", "upper errors", "lower errors" or "limit signs".
+        column: counted from 1.
+        source, source_column: what it is converted from.
+        count: how many cells are filled.
+        limits: how many of them are limits.
+        added: whether the column is new.
+    """
+
+    text: str
+    heading: Heading
+    holds: str
+    column: int
+    source: Heading
+    source_column: int
+    count: int
+    limits: int
+    added: bool
+
+
+@dataclass
+class SheetPlan:
+    """All that a fill does to one sheet.
+
+    Attributes:
+        reading: the sheet.
+        columns: the columns that get values.
+        cells: the new cells.
+        grown: the table that grows and the names of its new columns, or None.
+        left: address and reason of each cell that stays unfilled for a reason.
+        remarks: what a person should know of cells that were read, with their addresses.
+        passed_over: rows that are no part of the log, such as totals, by address.
+        notes: sentences for the report, warnings of whole columns among them.
+    """
+
+    reading: SheetReading
+    columns: list[FilledColumn] = field(default_factory=list)
+    cells: list[NewCells] = field(default_factory=list)
+    grown: tuple[Table, list[str]] | None = None
+    left: list[tuple[str, str]] = field(default_factory=list)
+    remarks: dict[str, list[str]] = field(default_factory=dict)
+    passed_over: list[str] = field(default_factory=list)
+    notes: list[str] = field(default_factory=list)
+
+    @property
+    def changed(self) -> list[Range]:
+        """The rectangles that get new cells."""
+        return [one.extent for one in self.cells if one.rows or one.texts]
