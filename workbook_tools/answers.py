@@ -13,7 +13,11 @@ from epochconv.history import ExpansionHistory
 from epochconv.intervals import Image, Spread
 from epochconv.measure import Measure
 from epochconv.moment import Moment
-from epochconv.parameter_errors import set_with_errors, with_parameter_error
+from epochconv.parameter_errors import (
+    parameters_text,
+    set_with_errors,
+    with_parameter_error,
+)
 from epochconv.peculiar_motion import widened
 from epochconv.printing import number_text, with_unit
 from epochconv.published import label_of
@@ -84,6 +88,15 @@ class Moments:
     def under(self, history: ExpansionHistory) -> Moments:
         """Return the moments of the same column under another history."""
         return Moments(self.source, history, self.side)  # its errors do not matter there
+
+    def error_notes(self) -> list[str]:
+        """Return what was added to the errors of the source, in sentences for the report."""
+        notes = []
+        if self._set is not None:
+            notes.append(parameters_text(self._set))
+        if self.terms.peculiar_velocity is not None:
+            notes.append(f"errors count peculiar motions of {self.terms.peculiar_velocity:g} km/s")
+        return notes
 
     def answers(self, heading: Heading) -> Answers:
         """Return what a column with that heading holds for each row."""

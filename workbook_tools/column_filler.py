@@ -16,6 +16,7 @@ from workbook_tools.cell_looks import CellLooks
 from workbook_tools.column_meanings import Heading, Role
 from workbook_tools.column_widths import hidden_columns
 from workbook_tools.errors import Refusal
+from workbook_tools.number_formats import significant_digits
 from workbook_tools.right_edge import right_edge
 from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_plan import FilledColumn, SheetPlan
@@ -41,7 +42,12 @@ _HOLDS = {
     Role.LOWER_ERROR: "lower errors",
     Role.LIMIT_FLAG: "limit signs",
 }
-_PREFIXES = {Role.UPPER_ERROR: "E_", Role.LOWER_ERROR: "e_", Role.LIMIT_FLAG: "l_"}
+# Headings of new companions. E_ and e_ would differ in their case alone, which tables forbid.
+_NEW = {
+    Role.UPPER_ERROR: "upper error of {}",
+    Role.LOWER_ERROR: "lower error of {}",
+    Role.LIMIT_FLAG: "limit flag of {}",
+}
 _LIMIT_DIGITS = (3, 5)
 
 NewColumn = tuple[Role, Heading, str]
@@ -148,7 +154,8 @@ class ColumnFiller:
         """Return the companions that a new column gets: errors on request, signs where needed."""
         found = self._error_columns(heading) if errors and self.source.has_errors else []
         if self.source.flagged and self._answers(heading).limits:
-            found.append((Role.LIMIT_FLAG, heading, f"{_PREFIXES[Role.LIMIT_FLAG]}{heading.name}"))
+            flag = _NEW[Role.LIMIT_FLAG].format(heading.name)
+            found.append((Role.LIMIT_FLAG, heading, flag))
         return found
 
     def _error_columns(self, heading: Heading) -> list[NewColumn]:
@@ -160,7 +167,7 @@ class ColumnFiller:
         ):
             return []
         return [
-            (role, heading, _PREFIXES[role] + heading.text)
+            (role, heading, _NEW[role].format(heading.text))
             for role in (Role.UPPER_ERROR, Role.LOWER_ERROR)
         ]
 
@@ -218,12 +225,18 @@ class ColumnFiller:
         if self.source.flagged:
             self._leave_unsigned(answers, blank, heading, target)
             return {}
-        digits = min(max(self.looks.digits, _LIMIT_DIGITS[0]), _LIMIT_DIGITS[1])
         return {
-            position: typed_text(float(answers.values[position]), limit=sign, digits=digits)
+            position: typed_text(
+                float(answers.values[position]), limit=sign, digits=self._limit_digits(position)
+            )
             for position, sign in answers.limits.items()
             if blank[position]
         }
+
+    def _limit_digits(self, position: int) -> int:
+        """Return how many digits a limit gets: as many as its source has, three to five."""
+        digits = significant_digits(float(self.source.values[position]))
+        return min(max(digits, _LIMIT_DIGITS[0]), _LIMIT_DIGITS[1])
 
     def _leave_unsigned(
         self, answers: Answers, blank: BoolArray, heading: Heading, target: ColumnCells | None
@@ -231,7 +244,8 @@ class ColumnFiller:
         """Leave limits whose sign would have no place: they never become plain numbers."""
         if target is None or self.reading.companion(target.column, Role.LIMIT_FLAG) is not None:
             return
-        reason = f"a limit, whose sign needs a column 'l_{heading.name}' beside {heading.text!r}"
+        flag = _NEW[Role.LIMIT_FLAG].format(heading.name)
+        reason = f"a limit, whose sign needs a column headed {flag!r}"
         unsigned = dict.fromkeys(answers.limits, reason)
         self._leave(unsigned, blank, target.column)
         for position in answers.limits:
@@ -251,7 +265,7 @@ class ColumnFiller:
         if role is Role.ERROR and np.any(blank & np.isfinite(sizes)):
             self.plan.notes.append(
                 f"column {column_letters(column)} holds the larger side of errors that are not"
-                " symmetric; for both sides use columns headed E_ (upper) and e_ (lower)"
+                " symmetric; for both sides use --with-errors or columns headed E_ and e_"
             )
         cut = [self._where(self.source.cells.column)(p) for p in answers.cut if blank[p]]
         if cut:

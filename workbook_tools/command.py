@@ -158,7 +158,7 @@ def _add_choices(parser: argparse.ArgumentParser) -> None:
     add(
         "--with-errors",
         action="store_true",
-        help="append error columns, E_ (upper) and e_ (lower), for filled columns that have none",
+        help="append columns of upper and lower errors for filled columns that have none",
     )
     add(
         "--parameter-error",

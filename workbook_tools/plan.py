@@ -56,6 +56,7 @@ def plan_sheet(reading: SheetReading, request: Request, styles: StyleSheet | Non
     filler.append(added, [one for _, one in targets], request.with_errors)
     filler.report_source()
     if plan.changed:
+        plan.notes += moments.error_notes()
         plan.notes += column_warnings(moments, [one.heading for one in plan.columns])
     return plan
 
