@@ -59,8 +59,9 @@ _LEVEL = re.compile(
 # Not the brackets of an exponent or of a unit such as km/(s Mpc).
 _BRACKET = re.compile(r" ?(?<![\^_/])[(\[]([^()\[\]]*)[)\]]")
 _FLAG = re.compile(r" ?(?:(\?\??|::?|\(\?\))|[*†‡§¶]{1,3})\Z")
-# A superscript is a footnote mark behind a decimal fraction; elsewhere it may be a power.
-_RAISED = re.compile(r"(?<=[.,][0-9])([0-9]*)[¹²³⁰⁴-⁹]{1,2}\Z")
+# A superscript is a footnote mark behind a decimal fraction; elsewhere it may be a power, and in
+# "2.10³" the point may be a sign of multiplication.
+_RAISED = re.compile(r"(?<=[.,])(?!10[¹²³⁰⁴-⁹])([0-9]+)[¹²³⁰⁴-⁹]{1,2}\Z")
 
 
 def made_plain(text: str) -> str:

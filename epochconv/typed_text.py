@@ -82,7 +82,7 @@ def typed_text(
     number = _digits(value, digits)
     if not errors:
         return limit + number
-    upper, lower = (_written_out(_digits(error, digits)) for error in errors)
+    upper, lower = (_written_out(_digits(abs(error), digits)) for error in errors)
     if any("e" in one for one in (number, upper, lower)):
         # A power of ten on one of them alone could be meant for all.
         number, upper, lower = (one if "e" in one else f"{one}e0" for one in (number, upper, lower))
