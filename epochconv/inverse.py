@@ -176,6 +176,8 @@ def _solve_block(
     x = low + (high - low) * np.divide(
         wanted - climb[piece], rise, out=np.zeros_like(rise), where=rise > 0.0
     )
+    result = np.empty_like(x)
+    unsettled = np.arange(len(x))
     for _ in range(_MOST_STEPS):
         gap = sign * measure.value_at(Moment(x=x), history) - wanted
         low = np.where(gap < 0.0, x, low)
@@ -188,7 +190,16 @@ def _solve_block(
         moved = np.abs(trial - x)
         x = trial
         blur = np.divide(wanted, slope, out=np.zeros_like(gap), where=slope > 0.0)
-        if np.all(moved <= _EPSILON * (2.0 * x + 4.0 * np.abs(blur))):
+        going = ~(moved <= _EPSILON * (2.0 * x + 4.0 * np.abs(blur)))
+        left = np.count_nonzero(going)
+        if left == 0:
             break
-    x[outside] = np.nan
-    return x
+        if left > 0.25 * len(x):
+            continue
+        # Few go on: near a turning point the steps shrink slowly.
+        result[unsettled] = x
+        unsettled, x, wanted = unsettled[going], x[going], wanted[going]
+        low, high = low[going], high[going]
+    result[unsettled] = x
+    result[outside] = np.nan
+    return result

@@ -91,6 +91,8 @@ def with_parameter_error(
     limits = _fixed_limits(target, parameters)
     low, beneath = inverse.cut_at(values - np.hypot(values - image.low, error), *limits)
     high, beyond = inverse.cut_at(values + np.hypot(image.high - values, error), *limits)
+    # A value may itself be an ulp beyond the end of the measure.
+    low, high = np.minimum(low, values), np.maximum(high, values)
     return Image(values, low, high, image.cut_low | beneath, image.cut_high | beyond)
 
 

@@ -249,6 +249,13 @@ class TestCombined:
         assert size[0] > found.values[0]
         assert (found.low[0], found.cut_low[0]) == (0.0, True)
 
+    def test_and_never_beyond_the_value_itself(self) -> None:
+        """2.725e10 K is the hottest of WMAP's tables, and rounds to a redshift above 1e10."""
+        hottest = 2.725 * (1 + 1e10)
+        for target in (measures.REDSHIFT, measures.SCALE_FACTOR, measures.CMB_TEMPERATURE):
+            _, _, found = self.both([hottest], 0.0, measures.CMB_TEMPERATURE, target, "wmap 2013")
+            assert found.low[0] <= found.values[0] <= found.high[0]
+
     def test_with_unknown_errors_stays_unknown(self) -> None:
         image, _, found = self.both([1.0], math.nan, measures.REDSHIFT, measures.AGE, "planck 2018")
         assert np.isnan([image.low[0], found.low[0], found.high[0]]).all()
