@@ -15,6 +15,7 @@ from dataclasses import dataclass
 from workbook_tools.column_meanings import Role
 from workbook_tools.heading_forms import Split, splits
 from workbook_tools.heading_units import UnitPart, read_unit, says_no_unit
+from workbook_tools.heading_words import LONGEST_HEADING
 
 _PREFIXED = re.compile(r"(?P<letter>[eElufqnrxowma])_(?P<base>.+)")
 _PREFIX_ROLES = {"e": Role.ERROR, "E": Role.UPPER_ERROR, "l": Role.LIMIT_FLAG}
@@ -58,13 +59,16 @@ _KINDS = {
         ("note", _NOTE),
         ("reference", _REFERENCE),
         ("limit", _LIMIT),
+        ("about", "type types method methods origin"),
         ("filler", _FILLER),
         ("plus", "+"),
         ("minus", "-"),
-        ("level", "1σ 1sigma 1-sigma 68% 68"),
+        ("level", "1σ 1-σ 1sigma 1-sigma 68% 68"),
+        ("part", "stat statistical sys syst systematic random"),
     )
     for word in words.split()
 }
+_LEVEL = re.compile(r"(?<=\S) ?\((?:1-?(?:σ|sigma)|68 ?%)\)$")
 _CARRIED = ("quality", "note", "reference")
 _PIECE = re.compile(r"[^\s_()\[\],]+")
 _LEADING = re.compile(r"\+/-|\+-|±|[+-]|σ(?=.)")
@@ -99,11 +103,15 @@ def companions_in(line: str, below: str = "") -> Iterator[Companion]:
     Args:
         below: what stands under it in the row of units.
     """
+    if len(line) > LONGEST_HEADING:
+        return
     if not says_no_unit(below):
         part = read_unit(below.strip("()[] "))
         yield from _named(line, part)
         return
-    ways = [way for way in splits(line) if _has_unit(way)]
+    line = _LEVEL.sub("", line)
+    # In round brackets a dash is the sign of a lower error, in square ones it says "no unit".
+    ways = [w for w in splits(line) if _has_unit(w) and (w.unit != "-" or "[-]" in line)]
     for way in ways:
         if way.sure:
             yield from _named(way.name, read_unit(way.unit))
@@ -151,6 +159,8 @@ def _in_words(name: str, part: UnitPart | None) -> Companion | None:
         if any(kind not in ("base", "filler") for kind in kinds[first:last]):
             return None
         base = _closed(name, tokens[first][0], tokens[last][1])
+        if not any(map(str.isalnum, base)):
+            return None
     role, carries = _role(set(kinds) - {"base", "filler"}, base)
     return None if role is None else Companion(role, base, carries, part)
 
@@ -160,7 +170,10 @@ def _role(kinds: set[str], base: str) -> tuple[Role | None, str]:
     upper, lower = kinds & {"upper", "plus"}, kinds & {"lower", "minus"}
     if kinds & {"upper error", "lower error"}:
         return (Role.UPPER_ERROR if "upper error" in kinds else Role.LOWER_ERROR), ""
-    if "error" in kinds or ("sigma" in kinds and (base or "level" in kinds)):
+    signed = bool(kinds & {"plus", "minus"})
+    if "error" in kinds or ("sigma" in kinds and (base or signed or "level" in kinds)):
+        if "part" in kinds:
+            return Role.UNCLEAR, "it is a part of the error, statistical or systematic"
         if kinds - {"error", "sigma", "level", "upper", "lower", "plus", "minus"} or (
             upper and lower
         ):
@@ -172,13 +185,15 @@ def _role(kinds: set[str], base: str) -> tuple[Role | None, str]:
         return Role.LIMIT_FLAG, ""
     if kinds == {"level"} and not base:
         return Role.ERROR, ""
-    if kinds in ({"plus"}, {"minus"}):
+    if signed and kinds - {"level"} in ({"plus"}, {"minus"}):
         return (Role.UPPER_ERROR if upper else Role.LOWER_ERROR), ""
     if len(kinds) == 1 and kinds <= set(_CARRIED):
         return Role.CARRIED, next(iter(kinds))
-    if base and kinds and kinds <= {"upper", "lower", "bound"}:
+    if base and kinds == {"about"}:
+        return Role.CARRIED, "note"
+    if kinds in ({"upper"}, {"lower"}) or (base and kinds and kinds <= {"upper", "lower", "bound"}):
         return Role.UNCLEAR, "it may be a bound or the size of an error"
-    if base and kinds == {"limit"}:
+    if kinds == {"limit"}:
         return Role.UNCLEAR, "'lim' may be the limit itself or a flag"
     return None, ""
 

@@ -88,11 +88,14 @@ def _owners(
 ) -> list[Column]:
     """Return the columns that a companion may belong to; more than one leaves a doubt."""
     if not one.base:
-        return [] if one.role is Role.CARRIED else _on_the_left(column, owners, by_number)
+        left = _on_the_left(column, owners, by_number)
+        doubtful = one.role is Role.UNCLEAR and not (left and left[0].is_value)
+        return [] if one.role is Role.CARRIED or doubtful else left
     same = [owner for owner in owners if one.base == owner.name or one.base in owner.lines]
     if not same:
         folded = one.base.casefold()
-        same = [o for o in owners if folded == o.name.casefold() and o.name != one.base.swapcase()]
+        # One letter in the other case is another quantity, as Z is a metallicity.
+        same = [o for o in owners if len(folded) > 1 and folded == o.name.casefold()]
     if not same and not one.exact:
         same = _same_measure(one.base, owners)
     return same
@@ -131,8 +134,8 @@ def _tied(one: Companion, found: Sequence[Column]) -> Meaning:
     owner = found[0]
     if one.role is Role.UNCLEAR:
         return unclear(
-            f"beside {owner.name!r}: {one.carries}; write 'upper error of {owner.name}', 'error of"
-            f" {owner.name}' or 'limit flag of {owner.name}'"
+            f"beside {owner.name!r}: {one.carries}; if it belongs to it, write 'error of"
+            f" {owner.name}', 'upper error of {owner.name}' or 'limit flag of {owner.name}'"
         )
     heading, part = owner.meaning.heading, one.part
     if heading is not None and part is not None and one.role in _ERRORS:

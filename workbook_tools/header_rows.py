@@ -25,8 +25,8 @@ _BAND = re.compile(
     r"(?:m_)?(?P<band>[ugriyYJHKUBVRI]'?|K_?s|W[1-4]|[FN]UV|F[0-9]{3}[WMLN]P?)"
     r"(?:[ _]?(?:mag|band|AB|Vega))?(?: ?[\[(](?:mag|AB|Vega|AB mag|mag AB)[\])])?"
 )
-# The bands on either side of z; a z beside a B or V magnitude alone is a redshift.
-_FAR_FROM_Z = frozenset("uUgBV")
+# The z band stands next to one of these; a z behind B and V, or behind H and K, is a redshift.
+_NEXT_TO_Z = re.compile(r"[rRiIyYJ]'?|W1|F[0-9]{3}[WMLN]P?")
 
 
 def read_headings(
@@ -41,9 +41,11 @@ def read_headings(
     """
     names, below, above = _sorted_out(rows)
     columns = []
-    for number in sorted({*names, *above}):
+    for number in sorted({*names, *above, *below}):
         group, unit = plain_line(above.get(number, "")), below.get(number, "")
         text = names.get(number, "")
+        if not text and not group:
+            text, unit = unit, ""
         if not text.strip() or plain_line(text).lower() in _JUST_THE_VALUE:
             text, group = above.get(number, text), ""
         columns.append(_column(number, text, unit, group))
@@ -59,7 +61,7 @@ def _sorted_out(
     filled = [{c: text for c, text in row.items() if text.strip()} for row in rows]
     filled = [row for row in filled if row]
     below: Mapping[int, str] = {}
-    if len(filled) > 1 and _holds_units(filled[-1]):
+    if len(filled) > 1 and holds_units(filled[-1]):
         below = filled.pop()
     names = filled.pop() if filled else {}
     above: dict[int, str] = {}
@@ -69,9 +71,10 @@ def _sorted_out(
     return names, below, above
 
 
-def _holds_units(row: Mapping[int, str]) -> bool:
+def holds_units(row: Mapping[int, str]) -> bool:
+    """Tell whether a row below the names holds their units."""
     lines = [plain_line(text) for text in row.values()]
-    if any(meaning_of(line).role is Role.VALUE for line in lines):
+    if any(meaning_of(line).role in (Role.VALUE, Role.UNCLEAR) for line in lines):
         return False
     liked = [line for line in lines if is_like_a_unit(line)]
     named = [line for line in liked if any(letter.isalpha() for letter in line)]
@@ -147,11 +150,12 @@ def _doubt_bands(
     for position, column in enumerate(main):
         if column.lines[-1] not in ("z", "H"):
             continue
-        beside = _run(bands[:position][::-1]) + _run(bands[position + 1 :])
+        before, behind = bands[:position][::-1], bands[position + 1 :]
         if column.lines[-1] == "H":
-            if beside:
+            if any(before[:1] + behind[:1]):
                 column.meaning = Meaning(Role.OTHER, why="the H band, among others")
             continue
+        beside = _run(before) + _run(behind)
         beside += (column.number in photometry) * 2 + (column.number in magnitudes and beside > 0)
         if column.is_value and beside > 1:
             column.meaning = unclear(
@@ -162,6 +166,6 @@ def _doubt_bands(
 
 def _run(bands: Sequence[re.Match[str] | None]) -> int:
     """Return how many bands follow one another from the start, none if the first is far from z."""
-    if not bands or bands[0] is None or bands[0]["band"] in _FAR_FROM_Z:
+    if not bands or bands[0] is None or not _NEXT_TO_Z.fullmatch(bands[0]["band"]):
         return 0
     return next((n for n, band in enumerate(bands) if band is None), len(bands))

@@ -7,11 +7,10 @@ megaparsecs is a distance of unnamed kind, in minutes of arc a diameter and none
 
 from __future__ import annotations
 
-import functools
 import re
 from dataclasses import dataclass
 
-from workbook_tools.heading_names import read_name
+from workbook_tools.heading_names import frame_called, read_name
 
 _DISTANCES = (
     "comoving distance",
@@ -38,6 +37,7 @@ class Doubt:
     remark: str = ""
 
 
+DISTANCE = Doubt(_DISTANCES, ("length", ""))
 VELOCITY = Doubt(
     ("velocity",),
     ("velocity", ""),
@@ -48,15 +48,16 @@ _TEMPERATURE = Doubt(("CMB temperature", "the temperature of another thing"), ("
 _CONSTANT = "a value of today, which belongs to the parameter set and not to a row"
 
 _ANY_CASE = {
-    "distance": Doubt(_DISTANCES, ("length", "")),
-    "dist": Doubt(_DISTANCES, ("length", "")),
-    "distances": Doubt(_DISTANCES, ("length", "")),
+    "distance": DISTANCE,
+    "dist": DISTANCE,
+    "distances": DISTANCE,
     "proper distance": Doubt((*_DISTANCES, "distance at emission"), ("length", "")),
     "physical distance": Doubt((*_DISTANCES, "distance at emission"), ("length", "")),
-    "cosmological distance": Doubt(_DISTANCES, ("length", "")),
+    "cosmological distance": DISTANCE,
     "hubble distance": Doubt(
         (), ("length", ""), "c/H or c·z/H0, neither of which is a distance that is converted here"
     ),
+    "hubble constant": Doubt((), ("rate", ""), _CONSTANT),
     "time": Doubt(_TIMES, ("time",)),
     "epoch": Doubt(_TIMES, ("time",)),
     "temperature": _TEMPERATURE,
@@ -98,6 +99,7 @@ _AS_WRITTEN = {
     "t": Doubt(("age", "another time"), ("",)),
     "H": Doubt(("Hubble rate", "an H magnitude"), ("",)),
     "H_0": Doubt((), ("rate", ""), _CONSTANT),
+    "Hz": Doubt(("hertz", "Hubble rate"), ()),
     "H0": Doubt((), ("rate", ""), _CONSTANT),
     "t_0": Doubt((), ("time",), _CONSTANT),
     "t0": Doubt((), ("time",), _CONSTANT),
@@ -114,7 +116,11 @@ _VELOCITY_SYMBOL = re.compile(
     r"cz|H?RV|[vV]_?(?:r|3k|hel|helio|bary|CMB|cmb|LSR|lsr|LG|lg|GSR|gsr|opt|rad|rel|sys|rec)|"
     r"VRAD|VOPT|ZOPT|VELO"
 )
-_POSSESSOR = re.compile(r" (?:to|of) (?:the )?(?:host|galaxy|object|target|source|quasar|burst)$")
+_POSSESSOR = re.compile(
+    r" (?:to|of|from) (?:the )?(?:host|galaxy|object|target|source|quasar|burst|us|earth|sun)$",
+    re.IGNORECASE,
+)
+_WORD = re.compile(r"[^\s_()\[\],]+")
 
 _MEASURED_DIRECTLY = re.compile(
     r"\b(?:cepheids?|ceph|trgb|tip of (?:the )?red giant branch|parallax|geometric|tully[- ]fisher|"
@@ -125,10 +131,12 @@ _MEASURED_DIRECTLY = re.compile(
     re.IGNORECASE,
 )
 _DISTANCE_WORD = re.compile(r"\b(?:dist(?:ance|\.)?s?|modulus|d(?:_?[lamc])?|dm|mu|µ|m-m)\b", re.I)
+_FAR_DISTANCE = re.compile(r"\bdist(?:ance)?\b", re.IGNORECASE)
 _AGE_WORD = re.compile(r"\bages?\b", re.IGNORECASE)
 _HAS_AN_AGE = re.compile(
     r"\b(?:stars?|stellar|ssp|host|galax(?:y|ies)|gal|clusters?|populations?|pop|progenitor|"
-    r"(?:mass|light|luminosity)[- ]weighted|mw|lw|burst|remnant|snr|isochrone|white dwarf|dust)\b",
+    r"(?:mass|light|luminosity)[- ]weighted|mw|lw|burst|remnant|snr?|supernova|isochrone|sed|"
+    r"white dwarf|dust)\b",
     re.IGNORECASE,
 )
 _Z_MAGNITUDE = re.compile(
@@ -150,7 +158,17 @@ def doubt_about(name: str) -> Doubt | None:
         return known
     if _TRAVEL.fullmatch(plain.lower()):
         return _TRAVELLED
-    return VELOCITY if _VELOCITY_SYMBOL.fullmatch(plain) else None
+    if _VELOCITY_SYMBOL.fullmatch(plain):
+        return VELOCITY
+    words = [word for word in _WORD.findall(plain) if not frame_called(word)]
+    unframed = _ANY_CASE.get(" ".join(words).lower())
+    framed = unframed is VELOCITY or (words and _VELOCITY_SYMBOL.fullmatch(words[0]) is not None)
+    return VELOCITY if framed and len(words) < 3 else None
+
+
+def is_far_distance(name: str, unit: str) -> bool:
+    """Tell whether a name of no known kind speaks of a distance, in a unit of the wide universe."""
+    return unit in ("Mpc", "Gpc", "Mly", "Gly") and _FAR_DISTANCE.search(name) is not None
 
 
 def measured_directly(name: str) -> str:
@@ -175,7 +193,6 @@ def is_z_magnitude(line: str) -> bool:
     return _Z_MAGNITUDE.fullmatch(line) is not None
 
 
-@functools.lru_cache(maxsize=1024)
 def transformed(line: str) -> str:
     """Return what a heading does to one of our measures: "log", "1+z", "multiplied"; else ""."""
     if _one_plus(line):

@@ -12,13 +12,13 @@ import re
 from dataclasses import dataclass, replace
 
 from epochconv.measure import Measure
-from epochconv.registry import find_measure, folded
+from epochconv.registry import find_measure, folded, measures
 from workbook_tools.heading_words import without_brackets
 
 # Symbols that are none of a measure's own; case matters.
 _SYMBOLS = {
     "scale factor": "a(t) a(z) 1/(1+z)",
-    "lookback time": "t_lookback t_lb tL t_lookb LBT t_look tlb t_LB",
+    "lookback time": "t_lookback T_lookback tlook t_lb tL t_lookb LBT t_look tlb t_LB",
     "age": "t_age t_z t_univ t_U t_cosmic t(z)",
     "comoving distance": "DC d_c d_C dc Dc D_c D_com Dcom D_comoving d_com",
     "CMB temperature": "TCMB T_cmb Tcmb T(CMB) T_gamma",
@@ -30,18 +30,19 @@ _SYMBOLS = {
 }
 # Words that are no name or alias of a measure; case, hyphens, underscores and stops do not matter.
 _WORDS = {
-    "redshift": "red shift, redshifts, z red",
+    "redshift": "red shift, redshifts, z red, source redshift, redshift of the source,"
+    " redshift of source",
     "scale factor": "cosmic scale factor, scalefactor",
     "lookback time": "look back, light travel time, lookbacktime",
-    "age": "universe age, age of universe, cosmological age, time after the big bang,"
-    " time since big bang, time after big bang, age of the universe at z, age at z,"
-    " age of universe at z, age at redshift z, age of the universe then",
-    "comoving distance": "co moving distance, comoving dist, comov dist, com dist,"
-    " line of sight comoving dist, radial comoving dist, los comoving distance",
+    "age": "universe age, age universe, age of universe, cosmological age, age since big bang,"
+    " age since the big bang, time since big bang, time after big bang, time after the big bang",
+    "comoving distance": "co moving distance, co moving dist, comoving dist, comoving d,"
+    " comov dist, com dist, line of sight comoving dist, radial comoving dist,"
+    " los comoving distance",
     "CMB temperature": "cmb temp, temp of the cmb, temperature of cmb",
     "transverse comoving distance": "transverse comoving dist, comoving transverse dist,"
     " transverse co moving distance",
-    "luminosity distance": "lum dist, lum distance, luminosity dist, lumdist",
+    "luminosity distance": "luminosity d, lum dist, lum distance, luminosity dist, lumdist",
     "angular diameter distance": "ang diam dist, angular diam dist, ang diam distance, ang dist,"
     " angular diameter dist, angular diam distance, angdist",
     "distance modulus": "dist mod, distance mod, dist modulus, distmod",
@@ -77,6 +78,9 @@ _PHRASES = {
 }
 _PHRASE = re.compile("|".join(_PHRASES), re.IGNORECASE)
 _GLUED = re.compile(r"z-?(?P<word>[A-Za-z]{2,6})|(?P<method>[Ss]pec|[Pp]hoto?)-?z")
+_AT_Z = re.compile(r"\(z\)|\(?at (?:this |the )?(?:z|redshift|redshift z)\)?", re.IGNORECASE)
+# Where Z has such a word with it, it is no metallicity.
+_CAPITAL_Z = re.compile(r"Z_?(?:SPEC|PHOT|HEL|HELIO|CMB|BEST)")
 _HYPHEN = re.compile(r"^- (?=\S)|(?<=\S) -$")
 _TOKEN = re.compile(r"[^\s_()\[\],;]+")
 _MOST_TOKENS = 10
@@ -113,7 +117,6 @@ def measure_called(name: str, dimension: str = "") -> Measure | None:
     return found
 
 
-@functools.lru_cache(maxsize=4096)
 def read_name(name: str, dimension: str = "") -> Name | None:
     """Return what a name part says, None where it names no measure.
 
@@ -121,29 +124,59 @@ def read_name(name: str, dimension: str = "") -> Name | None:
         name: of a plain line.
         dimension: of the unit beside it, "" where there is none.
     """
+    return _read_name(name, dimension, len(measures()))
+
+
+@functools.lru_cache(maxsize=4096)
+def _read_name(name: str, dimension: str, registered: int) -> Name | None:
+    """Read a name under the measures that are registered; their number only ever grows."""
+    name = name.replace("m - M", "m-M").replace("1 + z", "1+z")
+    name = name.lower() if _CAPITAL_Z.fullmatch(name) else name
     name = without_brackets(name) if measure_called(name) is None else name
     whole = measure_called(name, dimension)
     if whole is not None:
         return Name(whole)
     name = _PHRASE.sub(lambda phrase: _PHRASES[phrase[0].lower()], name).replace(" = ", ", ")
     tokens = list(_TOKEN.finditer(name))
-    if not tokens or len(tokens) > _MOST_TOKENS:
+    if len(tokens) > _MOST_TOKENS:
         return None
+    in_names = [_is_in_names(token[0], registered) for token in tokens]
     for length in range(len(tokens), 0, -1):
         for first in range(len(tokens) - length + 1):
-            start, end = tokens[first].start(), tokens[first + length - 1].end()
-            if name[end : end + 1] == ")" and name.count("(", start, end) > name.count(
-                ")", start, end
-            ):
-                end += 1
-            core = name[start:end]
+            if not all(in_names[first : first + length]):
+                continue
+            core = _closed(name, tokens[first].start(), tokens[first + length - 1].end())
             measure = measure_called(core, dimension)
             found = None if measure is None else Name(measure)
-            if found is None and length == 1:
-                found = _glued(core)
             if found is not None:
-                return _with_words(found, (name[:start], name[end:]), dimension)
+                start = tokens[first].start()
+                return _with_words(found, (name[:start], name[start + len(core) :]), dimension)
+    for token in tokens:
+        found = _glued(token[0])
+        if found is not None:
+            return _with_words(found, (name[: token.start()], name[token.end() :]), dimension)
     return None
+
+
+def _closed(name: str, start: int, end: int) -> str:
+    """Return a part of a name, with the bracket behind it that closes one within it."""
+    core = name[start:end]
+    return core + ")" if name[end : end + 1] == ")" and core.count("(") > core.count(")") else core
+
+
+def _is_in_names(token: str, registered: int) -> bool:
+    """Tell whether a word is part of any name; most words of a log are not."""
+    words = _words_of_names(registered)
+    token = token.rstrip(".").lower()
+    return token in words or all(part in words for part in token.split("-"))
+
+
+@functools.lru_cache(maxsize=8)
+def _words_of_names(registered: int) -> frozenset[str]:
+    names = [name for m in measures() for name in (m.name, m.symbol, *m.aliases)]
+    names += [*_by_symbol(), *_by_words(), "DM"]
+    tokens = {token[0].lower() for name in names for token in _TOKEN.finditer(name)}
+    return frozenset(tokens | {part for token in tokens for part in token.split("-")})
 
 
 def _glued(core: str) -> Name | None:
@@ -160,12 +193,18 @@ def _with_words(found: Name, around: tuple[str, str], dimension: str) -> Name:
     for part in around:
         words = _HYPHEN.sub("", part.strip(" ,;_"))
         inner = without_brackets(words)
-        if not inner or any(
-            measure_called(one, dimension) == found.measure
-            for one in (words, inner, words.strip(" ()[]"))
+        if (
+            not inner
+            or _AT_Z.fullmatch(words) is not None
+            or any(
+                measure_called(one, dimension) == found.measure
+                for one in (words, inner, words.strip(" ()[]"))
+            )
         ):
             continue
         tokens = [token[0].rstrip(".") for token in _TOKEN.finditer(inner)]
+        if {token.lower() for token in tokens} <= _own_words(found.measure):
+            continue
         together = _qualified(found, "".join(tokens))
         if together is not None:
             found = together
@@ -188,6 +227,17 @@ def _qualified(found: Name, word: str) -> Name | None:
     if method and is_redshift and not found.method:
         return replace(found, method=method)
     return None
+
+
+def frame_called(word: str) -> str:
+    """Return the frame that a word names, in plain words, or ""."""
+    return _frames().get(word.lower(), "")
+
+
+@functools.cache
+def _own_words(measure: Measure) -> frozenset[str]:
+    """Return the words that the names of a measure are made of; they add nothing to it."""
+    return frozenset(word for name in (measure.name, *measure.aliases) for word in name.split())
 
 
 def _is_filler(word: str | None) -> bool:

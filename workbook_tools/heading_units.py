@@ -62,6 +62,7 @@ _SCALED = re.compile(
     r" ?(?:[×x*·] ?)?(?P<unit>.*)|(?P<divided>.+) ?[/×*] ?10(?:0+|\^-?[0-9]+)"
 )
 _LOGARITHM = re.compile(r"(?:log(?:_?10)?|lg|ln|dex)\b ?(?P<unit>.*)")
+_H_IN_A_NAME = re.compile(r"(?P<unit>[kMG]?(?:pc|ly))_?(?:over_?)?h")
 _LITTLE_H = re.compile(r"h(?:_?[0-9]+)?")
 
 POWER_OF_TEN = (
@@ -91,6 +92,7 @@ class UnitPart:
     problem: str = ""
 
 
+@functools.lru_cache(maxsize=4096)
 def read_unit(text: str) -> UnitPart | None:
     """Return what a unit part says, None where it is no unit that is known here.
 
@@ -131,6 +133,9 @@ def _in_headings(text: str) -> Unit | None:
 def _transformed(text: str) -> UnitPart | None:
     if text == "%":
         return UnitPart(problem=PER_CENT)
+    match = _H_IN_A_NAME.fullmatch(text)
+    if match is not None:
+        return UnitPart(problem=f"{text} may divide by h or not; write [h^-1 {match['unit']}]")
     match = _LOGARITHM.fullmatch(text)
     if match is not None:
         inner = match["unit"].strip("() ")

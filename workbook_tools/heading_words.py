@@ -36,14 +36,20 @@ _TYPESET_MARKS = re.compile(r"[${}]")
 # Signs that refer to a note below the table; an asterisk also after a word, where it is no product.
 _NOTE_MARKS = re.compile(r"(?<=[\w\])])[*†‡§¶:]+$|(?<=[\])])\^\d$")
 
+# A longer text is a remark and no heading.
+LONGEST_HEADING = 100
+
 
 def plain_line(text: str) -> str:
     """Return a heading as one line in which each sign is written in one way.
 
     Line breaks and runs of blanks become one blank; invisible signs, typesetting and marks that
-    refer to notes are dropped.
+    refer to notes are dropped. A text that is too long for a heading only loses its line breaks.
     """
-    line = text.translate(_INVISIBLE)
+    line = text.translate(_INVISIBLE) if len(text) < 10 * LONGEST_HEADING else text
+    line = " ".join(line.split())
+    if len(line) > 2 * LONGEST_HEADING:
+        return line
     if not line.isascii():
         line = "".join(map(_ordinary, line))
         line = _SUPERSCRIPT.sub(_raised, line)

@@ -12,14 +12,17 @@ from collections.abc import Iterator
 from dataclasses import replace
 
 from epochconv.measure import Measure
+from epochconv.registry import measures
 from epochconv.units import Unit, unit_named
 from workbook_tools.cell_address import column_letters
 from workbook_tools.column_meanings import Heading, Meaning, Role, unclear
 from workbook_tools.heading_doubts import (
+    DISTANCE,
     VELOCITY,
     Doubt,
     age_of_something,
     doubt_about,
+    is_far_distance,
     is_z_magnitude,
     measured_directly,
     transformed,
@@ -35,10 +38,8 @@ from workbook_tools.heading_units import (
     read_unit,
     says_no_unit,
 )
-from workbook_tools.heading_words import plain_line
+from workbook_tools.heading_words import LONGEST_HEADING, plain_line
 
-# A longer text is a remark and no heading.
-_LONGEST = 100
 _BELOW = "in the row below"
 _WITH_NUMBER_UNIT = ("in brackets", _BELOW)
 _COMOVING = ("comoving distance", "transverse comoving distance")
@@ -52,7 +53,7 @@ def read_heading(text: str) -> Heading | None:
 def lacks_unit(text: str) -> Measure | None:
     """Return the measure that a heading names without the unit that it needs, None otherwise."""
     line = plain_line(text)
-    name = read_name(line) if 1 < len(line) <= _LONGEST else None
+    name = read_name(line) if 1 < len(line) <= LONGEST_HEADING else None
     if name is None or name.unknown or unit_named(name.measure.unit).dimension == "number":
         return None
     return name.measure
@@ -63,7 +64,6 @@ def same_heading(first: str, second: str) -> bool:
     return " ".join(first.split()).casefold() == " ".join(second.split()).casefold()
 
 
-@functools.lru_cache(maxsize=4096)
 def meaning_of(text: str, below: str = "", column: int | None = None) -> Meaning:
     """Return what a heading means by itself: a VALUE, UNCLEAR or OTHER.
 
@@ -73,8 +73,13 @@ def meaning_of(text: str, below: str = "", column: int | None = None) -> Meaning
             that the column holds logarithms.
         column: counted from 1, for the remedy that a reason names.
     """
-    line = plain_line(text)
-    if not line or len(line) > _LONGEST:
+    return _meaning_of(text, below, column, len(measures()))
+
+
+@functools.lru_cache(maxsize=4096)
+def _meaning_of(text: str, below: str, column: int | None, registered: int) -> Meaning:
+    line = _AND_ERROR.sub("", plain_line(text))
+    if not line or len(line) > LONGEST_HEADING:
         return Meaning(Role.OTHER)
     judge = _Judge(text, line, column)
     return judge.whole() or judge.parted(plain_line(below)) or Meaning(Role.OTHER)
@@ -168,7 +173,7 @@ class _Judge:
         if doubt is not None and "" in doubt.dimensions:
             return self._doubted(doubt, None)
         name = read_name(self.line)
-        if name is None or name.unknown:
+        if name is None or name.unknown or doubt is not None:
             return None
         own = unit_named(name.measure.unit)
         if own.dimension == "number":
@@ -206,6 +211,8 @@ class _Judge:
                 return self._fitting(way, name, part)
             if name.measure.name == "redshift" and part.velocity and not name.unknown:
                 return unclear(VELOCITY.remark)
+        if name is None and part.unit is not None and is_far_distance(way.name, part.unit.symbol):
+            return self._doubted(DISTANCE, part)
         if name is None or name.unknown or not way.sure or len(way.name) < 3:
             return None
         if not name.measure.unit:
@@ -215,8 +222,8 @@ class _Judge:
 
     def _no_unit(self, way: Split) -> Meaning | None:
         """Return the doubt about a heading with something else where a unit would stand."""
-        name = read_name(way.name)
-        if name is None or name.unknown or not way.sure:
+        name = read_name(way.name) if way.sure else None
+        if name is None or name.unknown:
             return None
         if way.form.startswith("after a slash"):
             if len(way.name) < 2 and way.name != "z":
@@ -282,6 +289,8 @@ class _Judge:
             return unclear(doubt.remark)
         first = read_name(doubt.could_be[0])
         as_text = doubt.could_be[0]
+        if first is not None and first.unknown:
+            first = None
         if first is not None and first.measure.unit:
             unit = part.unit if part is not None and part.unit is not None else None
             own = unit_named(first.measure.unit)
@@ -295,6 +304,10 @@ class _Judge:
         return unclear(f"could be {listed}: {remedy}")
 
 
+# The cells of `z ± σ` hold values, each with its error.
+_AND_ERROR = re.compile(
+    r"(?<=\S) ?(?:±|\+/-|\+-) ?(?:1?σ|1-?sigma|err(?:or)?|unc(?:ertainty)?|[σΔδ]_?[A-Za-z]\w*)\b"
+)
 # A `z` with a word so attached to it is a redshift of some sort; with others it may be anything.
 _Z_WITH = re.compile(r"z ?[_(\[]")
 _MAGNITUDES = read_unit("mag")
