@@ -8,7 +8,7 @@ import epochconv
 from epochconv.number_text import plain_number
 from epochconv.typed_outcomes import NoValue, Reason, Remark, Typed, Unread
 from epochconv.typed_text import read_typed, typed_text
-from epochconv.units import TABLE
+from epochconv.units import TABLE, unit_named
 
 
 @pytest.mark.parametrize(
@@ -109,6 +109,7 @@ def test_phrases_are_distinct() -> None:
 
 def test_two_options_together() -> None:
     both = {"decimal_comma": True, "brackets_are_notes": True}
+    assert read_typed("12 345", **both) == Typed(12345.0, remarks=(Remark.DIGIT_GROUPS,))
     assert read_typed("2,345(12)", **both) == Typed(2.345, remarks=(Remark.NOTE,))
     assert read_typed("2,3 (a) ± 0,1 [4]", **both) == Typed(2.3, 0.1, 0.1, remarks=(Remark.NOTE,))
 
@@ -128,6 +129,8 @@ def test_two_options_together() -> None:
         ("2.3(12,15)", Unread(Reason.BRACKET)),
         ("2.3,2.4", Unread(Reason.CANDIDATES)),
         (">6, <7", Unread(Reason.RANGE)),
+        (">=6, <=7", Unread(Reason.RANGE)),
+        ("13.2(Gyr)", Typed(13.2, unit=unit_named("Gyr"), remarks=(Remark.UNIT,))),
         ("z=2.3/2.4", Unread(Reason.CANDIDATES)),
         ("3000 km s-1", Unread(Reason.UNKNOWN_UNIT)),
         ("13.2 Gyr²", Unread(Reason.UNKNOWN_UNIT)),

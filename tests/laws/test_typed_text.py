@@ -88,7 +88,7 @@ def differences(cell: Cell, read: Typed) -> list[str]:
     return found
 
 
-@settings(max_examples=2000)
+@settings(max_examples=1000)
 @given(ANY_TEXT, OPTIONS)
 @example("9" * 5000, {})
 @example("\ud800", {})
@@ -108,7 +108,7 @@ def test_any_text_has_one_of_three_outcomes(text: str, options: dict[str, bool])
     assert list(read.remarks) == [remark for remark in Remark if remark in read.remarks]
 
 
-@settings(max_examples=2000)
+@settings(max_examples=1000)
 @given(ANY_TEXT, OPTIONS)
 def test_digits_of_a_value_stand_in_the_text(text: str, options: dict[str, bool]) -> None:
     """Nothing is invented: what was read, without its power of ten, was typed in this order."""
