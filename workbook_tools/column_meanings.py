@@ -63,8 +63,7 @@ class Meaning:
         of: of a companion, the name part of the heading of the column that it belongs to.
         owner: of a companion, the number of that column; None where the sheet has none.
         unit: of an error, the unit that its heading states; None where it states none, and it is
-            then that of the column it belongs to.
-        h_power: of an error, the power of h in that unit.
+            then that of the column it belongs to, as the power of h always is.
         reason: of an UNCLEAR one, why it is refused and what settles it; of a CARRIED one, what it
             carries: quality, note, reference or unit.
         why: one phrase that says what it was recognised by.
@@ -75,7 +74,6 @@ class Meaning:
     of: str = ""
     owner: int | None = None
     unit: Unit | None = None
-    h_power: int = 0
     reason: str = ""
     why: str = ""
 

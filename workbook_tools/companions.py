@@ -7,9 +7,10 @@ from dataclasses import dataclass, field, replace
 
 from epochconv.units import unit_named
 from workbook_tools.cell_address import column_letters
-from workbook_tools.column_meanings import Meaning, Role, unclear
+from workbook_tools.column_meanings import Heading, Meaning, Role, unclear
 from workbook_tools.companion_names import Companion
 from workbook_tools.heading_names import read_name
+from workbook_tools.heading_units import UnitPart
 
 _ERRORS = (Role.ERROR, Role.UPPER_ERROR, Role.LOWER_ERROR)
 
@@ -137,26 +138,29 @@ def _tied(one: Companion, found: Sequence[Column]) -> Meaning:
             f"beside {owner.name!r}: {one.carries}; if it belongs to it, write 'error of"
             f" {owner.name}', 'upper error of {owner.name}' or 'limit flag of {owner.name}'"
         )
-    heading, part = owner.meaning.heading, one.part
-    if heading is not None and part is not None and one.role in _ERRORS:
-        if part.problem or part.unit is None:
-            problem = part.problem or "an error is not in a unit of velocity"
+    if owner.meaning.heading is not None and one.part is not None and one.role in _ERRORS:
+        problem = _misfit(one.part, owner.meaning.heading)
+        if problem:
             return unclear(f"error of {owner.name!r}: {problem}")
-        if part.unit.dimension != heading.unit.dimension:
-            wanted = heading.unit.symbol or "no unit"
-            return unclear(
-                f"the error of {owner.name!r} cannot be in {part.unit.symbol}; the column holds"
-                f" {wanted}"
-            )
     return _as(one, owner.name, owner.number)
+
+
+def _misfit(part: UnitPart, heading: Heading) -> str:
+    """Return why an error in that unit is none of the column, "" where it is."""
+    if part.problem or part.unit is None:
+        return part.problem or "it cannot be in a unit of velocity"
+    if part.unit.dimension != heading.unit.dimension:
+        return f"it cannot be in {part.unit.symbol}; the column is in {heading.unit.symbol or '1'}"
+    if part.h_power != heading.h_power:
+        return "its unit has another power of h than that of the column; give both in one"
+    return ""
 
 
 def _as(one: Companion, of: str, owner: int | None) -> Meaning:
     unit = one.part.unit if one.part is not None and one.role in _ERRORS else None
-    h_power = one.part.h_power if one.part is not None and unit is not None else 0
     kind = one.carries if one.role is Role.CARRIED else one.role.value
     why = f"{kind} of {of!r}"
-    return Meaning(one.role, None, of, owner, unit, h_power, one.carries, why)
+    return Meaning(one.role, None, of, owner, unit, one.carries, why)
 
 
 def _tell_apart(owner: Column, mine: Sequence[Column]) -> None:

@@ -72,13 +72,19 @@ def _sorted_out(
 
 
 def holds_units(row: Mapping[int, str]) -> bool:
-    """Tell whether a row below the names holds their units."""
+    """Tell whether a row below the names holds their units.
+
+    One short sign may be anything in the first row of a log, such as a night's K or an observer's;
+    it takes a unit that is unmistakable, or two, or the mark `---` of catalogues beside it.
+    """
     lines = [plain_line(text) for text in row.values()]
     if any(meaning_of(line).role in (Role.VALUE, Role.UNCLEAR) for line in lines):
         return False
     liked = [line for line in lines if is_like_a_unit(line)]
     named = [line for line in liked if any(letter.isalpha() for letter in line)]
-    return bool(named) and 2 * len(liked) >= len(lines)
+    sure = any(read_unit(line.strip("()[] ")) is not None and len(line) > 1 for line in named)
+    enough = sure or len(named) > 1 or (bool(named) and "---" in lines)
+    return enough and 2 * len(liked) >= len(lines)
 
 
 def _column(number: int, text: str, unit: str, group: str) -> Column:

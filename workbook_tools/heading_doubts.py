@@ -140,7 +140,7 @@ _HAS_AN_AGE = re.compile(
     re.IGNORECASE,
 )
 _Z_MAGNITUDE = re.compile(
-    r"z'|[mM]_z|z[- _]?(?:band|mag|AB|ab|filter|psf|petro|model|auto)(?:[ _].*)?|"
+    r"z'|[mM]_z|z[- _]?(?:band|mag|AB|filter|psf|petro|model|auto)(?:[ _].*)?|"
     r"z ?[\[(](?:mag|AB|AB mag|mag AB|Vega)[\])]"
 )
 _LOGARITHM = re.compile(r"(?:[Ll]og(?:_?10)?|lg|ln)(?:[ _(]|(?=[^a-z]))(?P<inner>.+)")

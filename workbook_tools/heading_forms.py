@@ -59,7 +59,7 @@ def _bracketed(line: str) -> Iterator[Split]:
     for match in reversed(list(_BRACKET.finditer(line))):
         inner = match["square"] if match["square"] is not None else match["round"]
         before, after = line[: match.start()].rstrip(), line[match.end() :].lstrip()
-        if before and not before.endswith("/"):
+        if before and not before.endswith(("/", "[", "(")):
             yield Split(f"{before} {after}".strip(), inner.strip(), "in brackets", sure=True)
 
 

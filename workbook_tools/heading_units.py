@@ -48,13 +48,13 @@ _SAME = {"sec": "s", "kms": "km s"}
 _FOREIGN = """
     arcsec arcmin deg degrees ° ' " mas mas/yr h hr hour hours hrs min minutes ks Å nm µm um mm
     cm Jy mJy µJy erg/s erg/s/cm2 keV eV MeV GHz MHz Hz Msun Lsun Zsun counts ct ct/s e- ADU
-    mag/arcsec2 pc/cm3 cm-3 km/s m/s rad hms dms h:m:s d:m:s yyyy-mm-dd UT UTC JD MJD AB Vega
-    % °C C hPa Pa text
+    mag/arcsec2 pc/cm3 cm-3 km/s m/s rad hms dms h:m:s d:m:s yyyy-mm-dd UT UTC JD MJD
+    % °C hPa Pa
 """
 _NO_UNIT = frozenset({"---", "--", "-", "1", "dimensionless", "unitless", "none"})
 
 _FACTOR = re.compile(
-    r"(?P<sign>[()/])|[·.*× ]|1(?=/)|"
+    r"(?P<sign>[()/])|[·.*× ]|1(?= ?/)|"
     r"(?P<name>h_?[0-9]+|[A-Za-zµ]+)(?:(?:\^|\*\*)?(?P<power>\([+-]?[0-9]\)|[+-]?[0-9](?![0-9])))?"
 )
 _SCALED = re.compile(

@@ -41,7 +41,7 @@ from workbook_tools.heading_units import (
 from workbook_tools.heading_words import LONGEST_HEADING, plain_line
 
 _BELOW = "in the row below"
-_WITH_NUMBER_UNIT = ("in brackets", _BELOW)
+_WITH_NUMBER_UNIT = ("in brackets", "after a slash", _BELOW)
 _COMOVING = ("comoving distance", "transverse comoving distance")
 
 
@@ -87,8 +87,9 @@ def _meaning_of(text: str, below: str, column: int | None, registered: int) -> M
 
 def insist(column: int | None, as_text: str) -> str:
     """Return how to have a column taken for what its heading does not say."""
-    letters = "" if column is None else f" {column_letters(column)}:{column_letters(column)}"
-    return f"insist with --source{letters} --as '{as_text}'"
+    letters = "" if column is None else column_letters(column)
+    source = f"{letters}:{letters}" if letters else "and"
+    return f"insist with --source {source} --as '{as_text}'"
 
 
 class _Judge:
