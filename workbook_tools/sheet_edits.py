@@ -6,8 +6,10 @@ import re
 from array import array
 from collections.abc import Iterator
 from dataclasses import dataclass, field
+from typing import Any
 
 import numpy as np
+from numpy.typing import NDArray
 
 from workbook_tools.cell_address import Range, column_letters
 from workbook_tools.column_widths import width_edits
@@ -15,6 +17,11 @@ from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.splice import Edit, EditKind
 from workbook_tools.written_values import range_in
 from workbook_tools.xml_offsets import escape_text, qualified, set_attribute
+
+# Rows that are laid out at a time: many enough to be quick, few enough to take little memory.
+_ROWS_AT_ONCE = 4096
+# Stands for a cell that is not there: takes row and value, and writes nothing.
+_NOTHING = b"%.0a%.0a"
 
 
 @dataclass
@@ -64,119 +71,129 @@ def _position(edit: Edit) -> tuple[int, int]:
     return edit.start, edit.end
 
 
-class _Block:
-    """Columns that get numbers in the same rows, written together."""
+class _RowForm:
+    """The new cells of a row without their numbers and texts; many rows have the same form.
 
-    def __init__(self, columns: list[NewCells], prefix: bytes) -> None:
-        self.rows = columns[0].rows
-        self.columns = [one.column for one in columns]
-        self.last = self.columns[-1]
-        self._letters = [column_letters(column).encode() for column in self.columns]
-        self._prefix = prefix
-        self._styles = zip(*(one.styles for one in columns), strict=True)
-        self._values = zip(
-            *(part for one in columns for part in (one.rows, one.numbers)), strict=True
-        )
-        self._forms: dict[tuple[int, ...], list[bytes]] = {}
-        self._joined: dict[tuple[int, ...], bytes] = {}
-        self.place = 0
+    Attributes:
+        first, last: columns of the outermost cells.
+    """
 
-    def next_together(self) -> bytes:
-        """Return the cells of the next row as one run of bytes."""
-        self.place += 1
-        styles = next(self._styles)
-        joined = self._joined.get(styles)
-        if joined is None:
-            joined = self._joined[styles] = b"".join(self._forms_for(styles))
-        return joined % next(self._values)
+    def __init__(self, columns: list[NewCells], codes: tuple[int, ...], prefix: bytes) -> None:
+        self._cells = [
+            (place, one.column, _form_of_cell(one.column, code, prefix))
+            for place, (one, code) in enumerate(zip(columns, codes, strict=True))
+            if code
+        ]
+        forms = {place: form for place, _, form in self._cells}
+        self._whole = b"".join(forms.get(place, _NOTHING) for place in range(len(codes)))
+        self.first, self.last = self._cells[0][1], self._cells[-1][1]
 
-    def next_apart(self) -> list[tuple[int, bytes]]:
-        """Return column and bytes of each cell of the next row."""
-        self.place += 1
-        forms, values = self._forms_for(next(self._styles)), next(self._values)
+    def together(self, values: tuple[object, ...]) -> bytes:
+        """Return the cells as one run of bytes, given row and value of every column in turn."""
+        return self._whole % values
+
+    def apart(self, values: tuple[object, ...]) -> list[tuple[int, bytes]]:
+        """Return column and bytes of each cell."""
         return [
-            (column, form % values[2 * i : 2 * i + 2])
-            for i, (column, form) in enumerate(zip(self.columns, forms, strict=True))
+            (column, form % values[2 * place : 2 * place + 2])
+            for place, column, form in self._cells
         ]
 
-    def _forms_for(self, styles: tuple[int, ...]) -> list[bytes]:
-        """Return a template for each cell: 15 significant digits, all that programs keep."""
-        forms = self._forms.get(styles)
-        if forms is None:
-            p = self._prefix
-            forms = self._forms[styles] = [
-                b'<%bc r="%b%%d" s="%d"><%bv>%%.15g</%bv></%bc>' % (p, letters, style, p, p, p)
-                for letters, style in zip(self._letters, styles, strict=True)
-            ]
-        return forms
+
+def _form_of_cell(column: int, code: int, prefix: bytes) -> bytes:
+    """Return a template: 15 significant digits, all that programs keep, or a text."""
+    p, address, (style, is_text) = prefix, column_letters(column).encode(), divmod(code - 1, 2)
+    start = b'<%bc r="%b%%d" s="%d"' % (p, address, style)
+    if is_text:
+        inner = b' t="inlineStr"><%bis><%bt>%%b</%bt></%bis>' % (p, p, p, p)
+    else:
+        inner = b"><%bv>%%.15g</%bv>" % (p, p)
+    return b"%b%b</%bc>" % (start, inner, p)
 
 
-def _blocks(new: list[NewCells], prefix: bytes) -> list[_Block]:
-    """Group neighbouring columns that have the same rows."""
-    groups: list[list[NewCells]] = []
-    for one in new:
-        if one.rows and groups and groups[-1][0].rows == one.rows:
-            groups[-1].append(one)
-        elif one.rows:
-            groups.append([one])
-    return [_Block(group, prefix) for group in groups]
+class _Columns:
+    """Columns of new cells, laid out row by row."""
 
+    def __init__(self, new: list[NewCells], prefix: bytes) -> None:
+        self._new = new
+        self._prefix = prefix
+        self._numbers = [(np.array(one.rows), np.array(one.styles)) for one in new]
+        self._texts = [np.array(sorted(one.texts), dtype=np.int64) for one in new]
+        self._forms: dict[tuple[int, ...], _RowForm] = {}
 
-def _texts(new: list[NewCells], prefix: bytes) -> dict[int, list[tuple[int, bytes]]]:
-    """Return column and bytes of each text, by row."""
-    found: dict[int, list[tuple[int, bytes]]] = {}
-    p = prefix
-    for one in new:
-        address = column_letters(one.column).encode()
-        for row, (text, style) in one.texts.items():
-            cell = b'<%bc r="%b%d" s="%d" t="inlineStr"><%bis><%bt>%b</%bt></%bis></%bc>' % (
-                *(p, address, row, style),
-                *(p, p, escape_text(text).encode(), p, p, p),
-            )
-            found.setdefault(row, []).append((one.column, cell))
-    return found
+    def __iter__(self) -> Iterator[tuple[int, _RowForm, tuple[object, ...]]]:
+        """Yield number, form and values of each row that gets cells, top down."""
+        every = [rows for rows, _ in self._numbers] + self._texts
+        rows = np.unique(np.concatenate(every))
+        for start in range(0, len(rows), _ROWS_AT_ONCE):
+            part = rows[start : start + _ROWS_AT_ONCE]
+            numbers = part.tolist()
+            codes: list[list[int]] = []
+            values: list[list[Any]] = []
+            for place in range(len(self._new)):
+                column_codes, column_values = self._in_rows(place, part)
+                codes.append(column_codes)
+                values += [numbers, column_values]
+            keys, rows_of_values = zip(*codes, strict=True), zip(*values, strict=True)
+            for row, key, its_values in zip(numbers, keys, rows_of_values, strict=True):
+                form = self._forms.get(key)
+                if form is None:
+                    form = self._forms[key] = _RowForm(self._new, key, self._prefix)
+                yield row, form, its_values
+
+    def _in_rows(self, place: int, part: NDArray[np.int64]) -> tuple[list[int], list[Any]]:
+        """Return code and value of one column's cell in each of the rows.
+
+        The code is 0 where there is no cell; else it tells style and text or number.
+        """
+        one = self._new[place]
+        codes, values = np.zeros(len(part), dtype=np.int64), np.zeros(len(part))
+        rows, styles = self._numbers[place]
+        first, stop = np.searchsorted(rows, (part[0], part[-1] + 1))
+        there = np.searchsorted(part, rows[first:stop])
+        codes[there] = 1 + 2 * styles[first:stop]
+        values[there] = one.numbers[first:stop]
+        all_codes, all_values = codes.tolist(), values.tolist()
+        first, stop = np.searchsorted(self._texts[place], (part[0], part[-1] + 1))
+        text_rows = self._texts[place][first:stop]
+        places = np.searchsorted(part, text_rows).tolist()
+        for at, row in zip(places, text_rows.tolist(), strict=True):
+            text, style = one.texts[row]
+            all_codes[at], all_values[at] = 2 + 2 * style, escape_text(text).encode()
+        return all_codes, all_values
 
 
 def _row_edits(scan: SheetScan, new: list[NewCells]) -> Iterator[Edit]:
     prefix = scan.data.prefix.encode() + b":" if scan.data.prefix else b""
-    blocks, texts = _blocks(new, prefix), _texts(new, prefix)
-    parts = [np.array(block.rows, dtype=np.int64) for block in blocks]
-    rows = np.unique(np.concatenate([*parts, np.array(list(texts), dtype=np.int64)]))
     spans = _SpansEdits(scan)
     missing: list[bytes] = []
     index, count, numbers = 0, len(scan), scan.numbers
-    for row in rows.tolist():
+    for row, form, values in _Columns(new, prefix):
         while index < count and numbers[index] < row:
             if missing:
                 yield _inserted_rows(scan, index, missing)
                 missing = []
             index += 1
-        busy = [b for b in blocks if b.place < len(b.rows) and b.rows[b.place] == row]
-        there = index < count and numbers[index] == row
-        if there and missing:
+        if index == count or numbers[index] != row:
+            cells = form.together(values)
+            missing.append(b'<%brow r="%d">%b</%brow>' % (prefix, row, cells, prefix))
+            continue
+        if missing:
             yield _inserted_rows(scan, index, missing)
             missing = []
-        if there and len(busy) == 1 and row not in texts:
-            (block,) = busy
-            if scan.ends[index] > scan.tag_ends[index] and (
-                scan.last_columns[index] < block.columns[0]
-            ):
-                widened = spans.edit(index, block.columns[0], block.last)
-                if widened is not None:
-                    yield widened
-                position = scan.end_of_cells(index)
-                yield Edit(EditKind.CELL_INSERTED, position, position, block.next_together())
-                continue
-        cells = [cell for block in busy for cell in block.next_apart()] + texts.get(row, [])
-        cells.sort(key=lambda cell: cell[0])
-        if there:
-            yield from _edits_of_row(scan, index, cells, spans)
+        widened = spans.edit(index, form.first, form.last)
+        if widened is not None:
+            yield widened
+        tag_end = scan.tag_ends[index]
+        if scan.ends[index] == tag_end:
+            body = b">%b</%brow>" % (form.together(values), prefix)
+            yield Edit(EditKind.EMPTY_ROW_OPENED, tag_end - 2, tag_end, body)
+        elif scan.last_columns[index] < form.first:
+            end = scan.end_of_cells(index)
+            yield Edit(EditKind.CELL_INSERTED, end, end, form.together(values))
         else:
-            body = b"".join(cell for _, cell in cells)
-            missing.append(b'<%brow r="%d">%b</%brow>' % (prefix, row, body, prefix))
+            yield from _edits_among_cells(scan, index, form.apart(values))
     if missing:
-        while index < count and numbers[index] < row:
-            index += 1
         yield _inserted_rows(scan, index, missing)
 
 
@@ -192,25 +209,6 @@ def _inserted_rows(scan: SheetScan, index: int, rows: list[bytes]) -> Edit:
         return Edit(EditKind.ROW_INSERTED, end - 2, end, b">%b</%b>" % (body, name))
     position = scan.ends[-1] if len(scan) else scan.data.start_tag_end
     return Edit(EditKind.ROW_INSERTED, position, position, body)
-
-
-def _edits_of_row(
-    scan: SheetScan, index: int, cells: list[tuple[int, bytes]], spans: _SpansEdits
-) -> Iterator[Edit]:
-    widened = spans.edit(index, cells[0][0], cells[-1][0])
-    if widened is not None:
-        yield widened
-    tag_end = scan.tag_ends[index]
-    if scan.ends[index] > tag_end:
-        if scan.last_columns[index] >= cells[0][0]:
-            yield from _edits_among_cells(scan, index, cells)
-            return
-        end = scan.end_of_cells(index)
-        yield Edit(EditKind.CELL_INSERTED, end, end, b"".join(cell for _, cell in cells))
-        return
-    closing = b"</%brow>" % (scan.data.prefix.encode() + b":" if scan.data.prefix else b"")
-    body = b"".join(cell for _, cell in cells)
-    yield Edit(EditKind.EMPTY_ROW_OPENED, tag_end - 2, tag_end, b">%b%b" % (body, closing))
 
 
 def _edits_among_cells(

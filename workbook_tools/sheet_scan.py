@@ -52,6 +52,23 @@ class CellSpan(NamedTuple):
     type: str
 
 
+class PlainCell(NamedTuple):
+    """A cell as a plain search finds it.
+
+    Attributes:
+        row, start: its row number, and the offset of the element.
+        style: number of its format; 0 where it has none.
+        number: of a plain number; infinite where it is larger than any to be reckoned with.
+        text: the number of a shared text.
+    """
+
+    row: int
+    start: int
+    style: int
+    number: float | None
+    text: int | None
+
+
 class SheetScan:
     """The rows of a sheet and what surrounds them.
 
@@ -190,30 +207,29 @@ class SheetScan:
         cells = self.cells(index)
         return cells[-1].end if cells else self.tag_ends[index]
 
-    def plain_numbers(self, letters: bytes) -> Iterator[tuple[int, int, int, float | None]]:
-        """Yield row, offset, style and number of each cell of a column; for regular cells only.
+    def plain_cells(self, letters: bytes) -> Iterator[PlainCell]:
+        """Yield each cell of a column, top down; for regular cells only.
 
-        The number is None where the cell holds anything but a plain number, and infinite where it
-        is larger than any that can be reckoned with.
+        What is neither a plain number nor a shared text, such as a formula, is to be looked at
+        more closely.
         """
+        v, close = self._prefix + b"v", re.escape(self._closing)
+        number = rb'(?: t="n")?><%b>(-?\d+(?:\.\d+)?(?:[eE][-+]?\d+)?)' % v
+        text = rb' t="s"><%b>(\d{1,9})' % v
         pattern = re.compile(
             re.escape(self._opening + letters)
-            + rb'(\d+)"(?:(?: s="(\d+)")?(?: t="n")?><'
-            + self._prefix
-            + rb"v>(-?\d+(?:\.\d+)?(?:[eE][-+]?\d+)?)</"
-            + self._prefix
-            + b"v>"
-            + re.escape(self._closing)
-            + b")?"
+            + rb'(\d+)"(?:(?: s="(\d{1,9})")?'
+            + rb"(?:%b|%b)</%b>%b)?" % (number, text, v, close)
         )
         data = self.data
         for match in pattern.finditer(self.plain, data.start_tag_end, data.end_tag_start):
-            row, style, number = match.groups()
-            yield (
+            row, style, found, shared = match.groups()
+            yield PlainCell(
                 int(row),
                 match.start(),
                 0 if style is None else int(style),
-                None if number is None else float(number),
+                None if found is None else float(found),
+                None if shared is None else int(shared),
             )
 
     def rows_between(self, first: int, last: int) -> range:

@@ -10,7 +10,6 @@ from __future__ import annotations
 import math
 import re
 from array import array
-from collections import Counter
 from collections.abc import Callable, Collection, Sequence
 from dataclasses import dataclass, field
 
@@ -85,7 +84,7 @@ class ColumnCells:
         units: the unit typed with a value, by position.
         reasons: why a LEFT cell is left, by position.
         remarks: what a person should know of cells that were read, with their positions.
-        words: how often each word for "no value" stands.
+        shown: the text of each WORD cell, and of each LEFT one that has a text, by position.
     """
 
     column: int
@@ -98,7 +97,7 @@ class ColumnCells:
     units: dict[int, Unit] = field(default_factory=dict)
     reasons: dict[int, str] = field(default_factory=dict)
     remarks: dict[str, list[int]] = field(default_factory=dict)
-    words: Counter[str] = field(default_factory=Counter)
+    shown: dict[int, str] = field(default_factory=dict)
 
     def count(self, kind: int) -> int:
         """Return how many cells are of a kind."""
@@ -180,14 +179,14 @@ class _ColumnReader:
         )
 
     def take_all(self) -> None:
-        """Sort every cell of the column, plain numbers without a closer look."""
+        """Sort every cell of the column, plain numbers and texts without a closer look."""
         cells, scan = self.cells, self.scan
         letters = column_letters(cells.column).encode()
         index, stop = cells.indices.start, cells.indices.stop
         kinds, numbers, styles, rows = cells.kinds, cells.numbers, cells.styles, scan.numbers
         missing = self.rules.missing
         first = rows[index] if index < stop else 0
-        for row, start, style, number in scan.plain_numbers(letters):
+        for row, start, style, number, text in scan.plain_cells(letters):
             if row < first:
                 continue
             while index < stop and rows[index] < row:
@@ -197,19 +196,20 @@ class _ColumnReader:
             if rows[index] != row or not scan.starts[index] < start < scan.ends[index]:
                 raise scan.disordered(f"{letters.decode()}{row}")
             position = index - cells.indices.start
-            if (
-                number is None
-                or not -math.inf < number < math.inf
-                or number in missing
-                or self._is_special(style)
+            if number is not None and (
+                -math.inf < number < math.inf
+                and number not in missing
+                and not self._is_special(style)
             ):
-                cell = scan.find_cell(index, letters)
-                assert cell is not None  # it has just been seen there
-                self.take(position, cell)
-            else:
                 kinds[position] = NUMBER
                 numbers[position] = number
                 styles[position] = style
+            elif text is not None:
+                self._take_text(position, self.rules.text_of(text), style)
+            else:
+                cell = scan.find_cell(index, letters)
+                assert cell is not None  # it has just been seen there
+                self.take(position, cell)
 
     def take(self, position: int, cell: CellSpan) -> None:
         """Sort one cell."""
@@ -221,6 +221,9 @@ class _ColumnReader:
         formula = self.scan.formula(cell)
         typed = shown_text(self.scan, cell, self.rules)
         is_text = cell.type in ("s", "inlineStr", "str")
+        if is_text and formula is None:
+            self._take_text(position, typed, cell.style)
+            return
         if not typed.text.strip() and (formula is None or cell.type == "str"):
             cells.kinds[position] = WHITE
             return
@@ -233,10 +236,24 @@ class _ColumnReader:
             return
         if formula is not None:
             cells.remark(FORMULA, position)
-        if typed.struck or self.rules.is_struck(cell.style):
+        if self.rules.is_struck(cell.style):
             cells.remark(STRUCK, position)
         if not is_text and self.rules.is_percent(cell.style):
             cells.remark(Remark.PERCENT, position)
+
+    def _take_text(self, position: int, typed: TypedText, style: int) -> None:
+        """Sort a cell that holds a typed text."""
+        cells = self.cells
+        cells.styles[position] = style
+        if not typed.text.strip():
+            cells.kinds[position] = WHITE
+        elif typed.shifted and any(letter.isdigit() for letter in typed.text):
+            self._leave(position, _RAISED)
+        else:
+            self._take_value(position, typed.text, True)
+            struck = typed.struck or self.rules.is_struck(style)
+            if struck and cells.kinds[position] in (NUMBER, LIMIT):
+                cells.remark(STRUCK, position)
 
     def _take_value(self, position: int, text: str, is_text: bool) -> None:
         cells = self.cells
@@ -246,17 +263,18 @@ class _ColumnReader:
             brackets_are_notes=self.rules.brackets_are_notes,
             names=self.names,
         )
+        if not isinstance(found, Typed):
+            cells.shown[position] = _shortened(text)
         if isinstance(found, NoValue):
             if found.listed:
                 self._leave(position, f"no value yet: {_shortened(text)}")
             else:
                 cells.kinds[position] = WORD
-                cells.words[found.word] += 1
         elif not isinstance(found, Typed):
             self._leave(position, f"{NOT_READ}{_shortened(text)} ({found.reason})")
         elif found.value in self.rules.missing and not found.limit:
             cells.kinds[position] = WORD
-            cells.words[_shortened(text)] += 1
+            cells.shown[position] = _shortened(text)
         else:
             cells.kinds[position] = LIMIT if found.limit else NUMBER
             cells.numbers[position] = found.value
@@ -283,8 +301,6 @@ class _ColumnReader:
             return f"a formula error: {typed.text}"
         if cell.type == "d" or (cell.type == "n" and self.rules.is_date(cell.style)):
             return _DATE
-        if typed.shifted and any(letter.isdigit() for letter in typed.text):
-            return _RAISED
         return ""
 
     def _leave(self, position: int, reason: str) -> None:

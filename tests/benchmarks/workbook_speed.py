@@ -1,19 +1,13 @@
 """Time and memory of a large fill, against a load-assign-save with openpyxl and against the floor.
 
 A log of 100,000 rows and 12 columns (6 of text, 6 of numbers) gains six columns. Run it with
-`python -m tests.benchmarks.workbook_speed [runs]`; every ratio comes from this one run. Each
-contestant works in a process of its own, in turn, started from one that stays small, since a
-process counts its parent's memory as its own peak.
+`python -m tests.benchmarks.workbook_speed [runs]`; every ratio comes from this one run.
 """
 
 from __future__ import annotations
 
 import json
-import os
 import random
-import resource
-import statistics
-import subprocess
 import sys
 import tempfile
 import time
@@ -22,6 +16,9 @@ import zlib
 from pathlib import Path
 from xml.parsers import expat
 
+from tests.benchmarks.contestants import Figures, apart, line, measured, ratio
+
+MODULE = "tests.benchmarks.workbook_speed"
 ROWS = 100_000
 ADDED = (
     *("Age [Gyr]", "Lookback time [Gyr]", "D_C [Mpc]"),
@@ -33,7 +30,7 @@ SHEET = "xl/worksheets/sheet1.xml"
 BLOCK = 1 << 16
 
 
-def make(log: Path) -> dict[str, float]:
+def make(log: Path) -> Figures:
     """Write the log to be filled."""
     import xlsxwriter
 
@@ -63,7 +60,7 @@ def make(log: Path) -> dict[str, float]:
     return {}
 
 
-def ours(log: Path, result: Path) -> dict[str, float]:
+def ours(log: Path, result: Path) -> Figures:
     """Fill with this project."""
     start = time.perf_counter()
     from workbook_tools import fill
@@ -72,7 +69,7 @@ def ours(log: Path, result: Path) -> dict[str, float]:
     return measured(start)
 
 
-def theirs(log: Path, result: Path) -> dict[str, float]:
+def theirs(log: Path, result: Path) -> Figures:
     """Load, assign as many numbers, save with openpyxl."""
     start = time.perf_counter()
     import openpyxl
@@ -87,7 +84,7 @@ def theirs(log: Path, result: Path) -> dict[str, float]:
     return measured(start)
 
 
-def floor(log: Path, filled: Path) -> dict[str, float]:
+def floor(log: Path, filled: Path) -> Figures:
     """Do what nobody can avoid: inflate, parse, format the new numbers, deflate the result."""
     xml = sheet_bytes(filled)
     numbers = [[row * (k + 1.23456789012345) for row in range(ROWS)] for k in range(6)]
@@ -102,7 +99,7 @@ def floor(log: Path, filled: Path) -> dict[str, float]:
     return measured(start)
 
 
-def sizes(filled: Path) -> dict[str, float]:
+def sizes(filled: Path) -> Figures:
     """Compare the size of the filled sheet with what zlib level 6 makes of it."""
     packer = zlib.compressobj(6, zlib.DEFLATED, -15)
     six = len(packer.compress(sheet_bytes(filled))) + len(packer.flush())
@@ -116,51 +113,24 @@ def sheet_bytes(path: Path) -> bytes:
         return book.read(SHEET)
 
 
-def measured(start: float) -> dict[str, float]:
-    """Return the seconds since `start` and the peak memory of this process in MB."""
-    peak = resource.getrusage(resource.RUSAGE_SELF).ru_maxrss
-    return {
-        "seconds": time.perf_counter() - start,
-        "megabytes": peak / (2**20 if sys.platform == "darwin" else 1024),
-    }
-
-
-def apart(task: str, *paths: Path) -> dict[str, float]:
-    """Run one task of this file in a process of its own."""
-    done = subprocess.run(
-        [sys.executable, "-m", "tests.benchmarks.workbook_speed", task, *map(str, paths)],
-        check=True,
-        capture_output=True,
-        text=True,
-        env=os.environ | {"OPENPYXL_LXML": "False"},
-    )
-    figures: dict[str, float] = json.loads(done.stdout)
-    return figures
-
-
 def main(runs: int) -> None:
     """Print the figures with their bars."""
     mine, other, least = [], [], []
     with tempfile.TemporaryDirectory() as folder:
         log, filled, saved = (Path(folder) / f"{name}.xlsx" for name in ("log", "ours", "theirs"))
-        apart("make", log)
+        apart(MODULE, "make", log)
         for _ in range(runs):
             filled.unlink(missing_ok=True)
-            mine.append(apart("ours", log, filled))
-            other.append(apart("theirs", log, saved))
-            least.append(apart("floor", log, filled))
-        size = apart("sizes", filled)["size"]
-
-    def ratio(name: str, against: list[dict[str, float]]) -> float:
-        return statistics.median(a[name] / b[name] for a, b in zip(mine, against, strict=True))
+            mine.append(apart(MODULE, "ours", log, filled))
+            other.append(apart(MODULE, "theirs", log, saved))
+            least.append(apart(MODULE, "floor", log, filled))
+        size = apart(MODULE, "sizes", filled)["size"]
 
     for label, figures in (("fill", mine), ("openpyxl", other), ("floor", least)):
-        seconds = statistics.median(one["seconds"] for one in figures)
-        megabytes = statistics.median(one["megabytes"] for one in figures)
-        print(f"{label:9} {seconds:6.2f} s {megabytes:6.0f} MB   (median of {runs})")
-    print(f"time      {ratio('seconds', other):.3f} of openpyxl's      (bar 0.167)")
-    print(f"memory    {ratio('megabytes', other):.3f} of openpyxl's      (bar 0.250)")
-    print(f"floor     {ratio('seconds', least):.2f} times it            (aim 1.5)")
+        print(line(label, figures))
+    print(f"time      {ratio('seconds', mine, other):.3f} of openpyxl's      (bar 0.167)")
+    print(f"memory    {ratio('megabytes', mine, other):.3f} of openpyxl's      (bar 0.250)")
+    print(f"floor     {ratio('seconds', mine, least):.2f} times it            (aim 1.5)")
     print(f"size      {size:.3f} of zlib level 6   (bar 1.100)")
 
 

@@ -131,10 +131,37 @@ def test_rows_and_cells_go_between_old_ones() -> None:
     assert kinds.count(K.ROW_INSERTED) == 3
 
 
+def test_texts_stand_among_the_numbers_of_a_column() -> None:
+    limits = numbers(2, {2: 1.5, 4: 2.5})
+    limits.texts = {1: ("Age [Gyr]", 0), 3: ("<0.93", 4)}
+    result, _ = put("", [limits, numbers(3, {3: 7.0})])
+    assert result == (
+        '<row r="1"><c r="B1" s="0" t="inlineStr"><is><t>Age [Gyr]</t></is></c></row>'
+        '<row r="2"><c r="B2" s="1"><v>1.5</v></c></row>'
+        '<row r="3"><c r="B3" s="4" t="inlineStr"><is><t>&lt;0.93</t></is></c>'
+        '<c r="C3" s="1"><v>7</v></c></row>'
+        '<row r="4"><c r="B4" s="1"><v>2.5</v></c></row>'
+    )
+
+
+def test_a_long_column_is_laid_out_like_a_short_one() -> None:
+    rows = range(3, 20_000, 3)
+    first, second = numbers(2, dict.fromkeys(rows, 1.5)), numbers(3, dict.fromkeys(rows[::2], 2.5))
+    first.texts = {row + 1: ("<6", 0) for row in rows[::500]}
+    result, _ = put("", [first, second])
+    expected = []
+    for row in rows:
+        beside = f'<c r="C{row}" s="1"><v>2.5</v></c>' if row in rows[::2] else ""
+        expected.append(f'<row r="{row}"><c r="B{row}" s="1"><v>1.5</v></c>{beside}</row>')
+        if row in rows[::500]:
+            text = f'<c r="B{row + 1}" s="0" t="inlineStr"><is><t>&lt;6</t></is></c>'
+            expected.append(f'<row r="{row + 1}">{text}</row>')
+    assert result == "".join(expected)
+
+
 def test_columns_with_other_rows_and_a_heading_meet_in_one_row() -> None:
-    first, second = numbers(6, {2: 1.0, 3: 2.0}), numbers(3, {3: 4.0})
-    first.heading = (2, "never", 0)
-    third = NewCells(5, heading=(2, HEADING, 7))
+    second = numbers(3, {3: 4.0})
+    third = NewCells(5, texts={2: (HEADING, 7)})
     rows = '<row r="2"><c r="A2"/></row><row r="3"/>'
     result, _ = put(rows, [numbers(6, {2: 1.0, 3: 2.0}), second, third])
     text = HEADING.replace("&", "&amp;").replace("<", "&lt;").replace(">", "&gt;")
@@ -156,7 +183,7 @@ def test_a_number_keeps_fifteen_significant_digits(number: float) -> None:
 def test_the_prefix_of_the_sheet_is_taken_over() -> None:
     scan = scan_of('<x:row r="2"><x:c r="A2"/></x:row><x:row r="3"/>', prefix="x")
     new = numbers(2, {2: 1.5, 3: 2.5, 4: 3.5})
-    new.heading = (1, "Age [Gyr]", 0)
+    new.texts = {1: ("Age [Gyr]", 0)}
     text, _ = edited(scan, [new])
     assert view_of(b"".join(spliced(scan.xml, edits(scan, [new])))).by_position.keys() == {
         (1, 2),
@@ -238,9 +265,9 @@ def test_random_cells_in_random_sheets(xml: bytes, data: DataObject) -> None:
     expected = {
         (row, one.column): v for one in new for row, v in zip(one.rows, one.numbers, strict=True)
     }
-    headings = {(one.heading[0], one.column) for one in new if one.heading}
+    texts = {(row, one.column) for one in new for row in one.texts}
     seen = {cell for difference in part_differences(xml, result) for cell in difference.cells}
-    assert seen == expected.keys() | headings
+    assert seen == expected.keys() | texts
     after = view_of(result)
     _check_order(after, seen)
     for place in before.by_position.keys() - seen:
@@ -249,7 +276,7 @@ def test_random_cells_in_random_sheets(xml: bytes, data: DataObject) -> None:
         kind, style, text, _, _ = _content(after, place)
         assert (kind, style) == ("n", "2")
         assert math.isclose(float(text or ""), value, rel_tol=5e-15)
-    for place in headings:
+    for place in texts:
         assert _content(after, place)[3] == HEADING
 
 
@@ -264,10 +291,11 @@ def _new_cells(draw: st.DrawFn, view: SheetView) -> list[NewCells]:
         free = [row for row in range(1, 2 * LAST_ROW + 8) if (row, column) not in taken]
         rows = draw(st.lists(st.sampled_from(free), unique=True, min_size=1, max_size=12))
         one = numbers(column, {row: draw(st.sampled_from(NUMBERS)) for row in rows}, style=2)
-        if len(rows) > 1 and draw(st.booleans()):
-            one.heading = (one.rows.pop(0), HEADING, 3)
-            one.numbers.pop(0)
-            one.styles.pop(0)
+        for _ in range(draw(st.integers(0, len(rows)))):
+            place = draw(st.integers(0, len(one.rows) - 1))
+            one.texts[one.rows.pop(place)] = (HEADING, 3)
+            one.numbers.pop(place)
+            one.styles.pop(place)
         new.append(one)
     return new
 
@@ -302,6 +330,6 @@ def _content(view: SheetView, place: tuple[int, int]) -> tuple[str | None, ...]:
 def test_a_column_says_how_far_its_cells_reach() -> None:
     new = numbers(4, {3: 1.0, 8: 2.0})
     assert new.extent.a1 == "D3:D8"
-    new.heading = (2, HEADING, 0)
+    new.texts = {2: (HEADING, 0), 5: ("<6", 0)}
     assert new.extent.a1 == "D2:D8"
     assert letters(4) == "D"

@@ -38,7 +38,7 @@ def test_odd_but_legal_sheets_are_read_as_lxml_reads_them(xml: bytes) -> None:
             assert (scan.value_text(cell) or "") == (other.value or "")
             assert scan.formula(cell) == (None if formula is None else formula.text)
             if inline is not None:
-                assert scan.inline_text(cell) == text_of(inline)
+                assert scan.inline_text(cell).text == text_of(inline)
 
 
 @given(odd_sheets())
@@ -97,7 +97,7 @@ def test_what_only_looks_like_a_cell_is_none() -> None:
     rich = '<is><r><rPr><color rgb="FF"/></rPr><t>r="B1" &lt;c r="C1"/></t></r></is>'
     scan = scan_of(f'<row r="1"><c r="A1" t="inlineStr">{rich}</c ><c r="D1"/></row >')
     assert addresses(scan) == ["A1", "D1"]
-    assert scan.inline_text(scan.cells(0)[0]) == 'r="B1" <c r="C1"/>'
+    assert scan.inline_text(scan.cells(0)[0]).text == 'r="B1" <c r="C1"/>'
 
 
 def test_a_false_end_of_the_rows_hides_nothing() -> None:
@@ -118,16 +118,25 @@ def test_the_outline_counts_its_offsets_in_the_whole_part() -> None:
     assert scan.xml[scan.data.end_tag_start : scan.data.end] == b"</sheetData>"
 
 
-def test_plain_numbers_come_with_row_place_and_style() -> None:
+def test_plain_numbers_and_shared_texts_come_with_row_place_and_style() -> None:
     scan = scan_of(
         '<row r="3"><c r="B3" s="4"><v>1.5</v></c></row>'
         '<row r="5"><c r="B5" t="n"><v>-2E-3</v></c><c r="BB5"><v>9</v></c></row>'
         '<row r="6"><c r="B6" t="s"><v>7</v></c></row>'
+        '<row r="7"><c r="B7" s="2" t="s"><v>0</v></c></row>'
         '<row r="8"><c r="B8"><f>1+1</f><v>2</v></c></row>'
+        '<row r="9"><c r="B9" t="b"><v>1</v></c></row>'
     )
-    found = [(row, style, number) for row, _, style, number in scan.plain_numbers(b"B")]
-    assert found == [(3, 4, 1.5), (5, 0, -0.002), (6, 0, None), (8, 0, None)]
-    places = [start for _, start, _, _ in scan.plain_numbers(b"B")]
+    found = [(row, style, number, text) for row, _, style, number, text in scan.plain_cells(b"B")]
+    assert found == [
+        (3, 4, 1.5, None),
+        (5, 0, -0.002, None),
+        (6, 0, None, 7),
+        (7, 2, None, 0),
+        (8, 0, None, None),
+        (9, 0, None, None),
+    ]
+    places = [cell.start for cell in scan.plain_cells(b"B")]
     assert all(scan.xml[start:].startswith(b'<c r="B') for start in places)
 
 
