@@ -12,6 +12,7 @@ from dataclasses import dataclass, field
 import numpy as np
 from numpy.typing import NDArray
 
+from epochconv.typed_outcomes import Remark
 from epochconv.units import factor
 from workbook_tools.cell_address import column_letters
 from workbook_tools.column_meanings import Heading, Role
@@ -99,6 +100,8 @@ def _take_typed_errors(found: ValueColumn) -> None:
 def _take_units(found: ValueColumn) -> None:
     """Bring cells with a unit of their own into that of the heading, or leave them."""
     unit = found.heading.unit
+    # Of a unit in the cell only a difference is worth a remark, and that follows here.
+    found.remarks.pop(Remark.UNIT, None)
     for position, typed in found.cells.units.items():
         if typed.dimension != unit.dimension:
             found.values[position] = np.nan
