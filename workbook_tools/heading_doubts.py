@@ -11,6 +11,7 @@ import re
 from dataclasses import dataclass
 
 from workbook_tools.heading_names import frame_called, read_name
+from workbook_tools.heading_words import without_brackets
 
 _DISTANCES = (
     "comoving distance",
@@ -152,7 +153,7 @@ _MULTIPLIED = re.compile(
 
 def doubt_about(name: str) -> Doubt | None:
     """Return the doubt about a name as it stands without its unit, None where there is none."""
-    plain = _POSSESSOR.sub("", name)
+    plain = _POSSESSOR.sub("", without_brackets(name))
     known = _AS_WRITTEN.get(plain) or _ANY_CASE.get(plain.lower().rstrip("."))
     if known is not None:
         return known

@@ -94,12 +94,14 @@ class Name:
         measure: the measure that it names.
         frame, method: in plain words; empty where the name says nothing of them.
         unknown: the words beside the measure that are not known.
+        called: the part of the name that is the measure's.
     """
 
     measure: Measure
     frame: str = ""
     method: str = ""
     unknown: tuple[str, ...] = ()
+    called: str = ""
 
 
 def measure_called(name: str, dimension: str = "") -> Measure | None:
@@ -135,10 +137,10 @@ def _read_name(name: str, dimension: str, registered: int) -> Name | None:
     name = without_brackets(name) if measure_called(name) is None else name
     whole = measure_called(name, dimension)
     if whole is not None:
-        return Name(whole)
+        return Name(whole, called=name)
     name = _PHRASE.sub(lambda phrase: _PHRASES[phrase[0].lower()], name).replace(" = ", ", ")
     tokens = list(_TOKEN.finditer(name))
-    if len(tokens) > _MOST_TOKENS:
+    if len(tokens) > _MOST_TOKENS or not _is_balanced(name):
         return None
     in_names = [_is_in_names(token[0], registered) for token in tokens]
     for length in range(len(tokens), 0, -1):
@@ -147,7 +149,7 @@ def _read_name(name: str, dimension: str, registered: int) -> Name | None:
                 continue
             core = _closed(name, tokens[first].start(), tokens[first + length - 1].end())
             measure = measure_called(core, dimension)
-            found = None if measure is None else Name(measure)
+            found = None if measure is None else Name(measure, called=core)
             if found is not None:
                 start = tokens[first].start()
                 return _with_words(found, (name[:start], name[start + len(core) :]), dimension)
@@ -156,6 +158,11 @@ def _read_name(name: str, dimension: str, registered: int) -> Name | None:
         if found is not None:
             return _with_words(found, (name[: token.start()], name[token.end() :]), dimension)
     return None
+
+
+def _is_balanced(name: str) -> bool:
+    """Tell whether each bracket is closed; `a)` is an entry of a list."""
+    return all(name.count(opening) == name.count(closing) for opening, closing in ("()", "[]"))
 
 
 def _closed(name: str, start: int, end: int) -> str:
@@ -185,7 +192,7 @@ def _glued(core: str) -> Name | None:
     match = _GLUED.fullmatch(core)
     if redshift is None or match is None or _is_filler(match["word"]):
         return None
-    return _qualified(Name(redshift), match["word"] or match["method"])
+    return _qualified(Name(redshift, called=core), match["word"] or match["method"])
 
 
 def _with_words(found: Name, around: tuple[str, str], dimension: str) -> Name:

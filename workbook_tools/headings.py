@@ -174,7 +174,7 @@ class _Judge:
         if doubt is not None and "" in doubt.dimensions:
             return self._doubted(doubt, None)
         name = read_name(self.line)
-        if name is None or name.unknown or doubt is not None:
+        if name is None or name.unknown or doubt is not None or name.called == "a":
             return None
         own = unit_named(name.measure.unit)
         if own.dimension == "number":
@@ -188,7 +188,7 @@ class _Judge:
         name = read_name(self.line)
         if name is None or not name.unknown or name.measure.unit:
             return None
-        if name.measure.name.split()[0] not in self.line.lower() and not _Z_WITH.match(self.line):
+        if len(name.called) < 2 and not _Z_WITH.match(self.line):
             return None
         if any(way.sure and is_like_a_unit(way.unit) for way in splits(self.line)):
             return None
@@ -212,7 +212,8 @@ class _Judge:
                 return self._fitting(way, name, part)
             if name.measure.name == "redshift" and part.velocity and not name.unknown:
                 return unclear(VELOCITY.remark)
-        if name is None and part.unit is not None and is_far_distance(way.name, part.unit.symbol):
+        strange = name is None or name.unknown
+        if strange and part.unit is not None and is_far_distance(way.name, part.unit.symbol):
             return self._doubted(DISTANCE, part)
         if name is None or name.unknown or not way.sure or len(way.name) < 3:
             return None

@@ -111,3 +111,14 @@ def test_the_remedy_can_be_typed_as_it_stands(text: str, column: int | None, rem
     assert remedy in meaning.reason
     # What --as is given must itself be a heading.
     assert meaning_of(remedy.split("--as ")[1].strip("'")).role is Role.VALUE
+
+
+@pytest.mark.parametrize(
+    "text", ["a)", "a value", "(t)", "Age [Gyr", "z)", "Redshift or age", "z=2"]
+)
+def test_texts_of_remarks_and_lists_are_no_measures(text: str) -> None:
+    assert meaning_of(text).role is not Role.VALUE
+
+
+def test_a_remark_that_begins_like_a_heading_is_none() -> None:
+    assert meaning_of("Age [Gyr]" + " of the host, from its colours" * 4).role is Role.OTHER
