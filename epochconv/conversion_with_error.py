@@ -87,10 +87,8 @@ def convert_with_error(
     image = _image(
         spread, *measures, chosen, parameters, side=side, outside=outside, shape=given.shape
     )
-    own, errors = (
-        unit_named(measures[1].unit),
-        (image.values - image.low, image.high - image.values),
-    )
+    own = unit_named(measures[1].unit)
+    errors = image.values - image.low, image.high - image.values
     central, lower, upper, low, high = (
         quantity_of(_shaped(part, given.shape), own, unit, given.asker)
         for part in (image.values, *errors, image.low, image.high)

@@ -112,6 +112,8 @@ class TestPrinted:
         # 1/1.9 = 0.526, 1/2.1 = 0.476; 1/2.9 = 0.345, 1/3.1 = 0.323
         assert first.startswith("[0.500 +0.026 −0.024, 0.333 ± 0.011, ")
         assert first.endswith(", and 2 more]")
+        five = convert_with_error(np.arange(1.0, 6.0), 0.1, "redshift", "scale factor")
+        assert "more" not in repr(five)
 
     def test_cut_ends(self) -> None:
         found = convert_with_error([0.1, 0.1, 1], 0.2, "redshift", "age")
@@ -209,6 +211,8 @@ class TestValues:
             for side in ("nearer", "farther")
         )
         assert near.high.magnitude < far.low.magnitude
+        itself = convert_with_error(1500, 10, "D_A", "D_A", unit="Gpc")
+        assert_close([itself.low.magnitude, itself.high.magnitude], [1.49, 1.51])
 
     @pytest.mark.parametrize("bad", ["side", "outside"])
     def test_with_words_that_are_none(self, bad: str) -> None:

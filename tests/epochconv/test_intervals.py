@@ -205,6 +205,39 @@ class TestTurningPoints:
         assert_close(found.high[0], all_of_it.max(), relative=1e-7)
         assert found.low[0] <= found.low[1]
 
+    def test_of_a_distance_are_those_of_its_modulus(self) -> None:
+        for z, error in ((1, 0.5), (3, 2.9)):
+            length = through(z, error, 30, "redshift", "luminosity distance", LOITERING)
+            modulus = through(z, error, 30, "redshift", "distance modulus", LOITERING)
+            assert_close(modulus.high, 5 * np.log10(length.high) + 25)
+            # Nearly nothing at the antipode: a modulus of about minus a hundred.
+            assert length.low[0] < 1e-3
+            assert modulus.low[0] < 10
+
+    def test_leave_each_value_on_its_own_branch(self) -> None:
+        """The farthest epoch of a small distance is where it rises, that of a large one beyond."""
+        how = {"source": "transverse comoving distance", "target": "redshift"}
+        values = np.array([500.0, 4300.0])
+        found = through(values, 10, 20, history=LOITERING, side="farther", **how)
+        assert found.values[0] < 10 < found.values[1]
+        for i in (0, 1):
+            alone = through(values[i], 10, 20, history=LOITERING, side="farther", **how)
+            assert (found.low[i], found.high[i]) == (alone.low[0], alone.high[0])
+        ends = epochconv.convert(
+            np.concatenate([found.low, found.high]),
+            "redshift",
+            "transverse comoving distance",
+            history=LOITERING,
+        )
+        # Behind the antipode the distance rises, as far as z 10.06, and then falls.
+        assert_close(ends, [490, 4320, 520, 4290], relative=1e-9)
+        sizes = np.array([10.0, 10.0]), np.array([20.0, 20.0])
+        span = span_at(
+            Spread(values, *sizes), measure_named(how["source"]), LOITERING, side="farther"
+        )
+        assert np.all(span.nearer.x < span.moment.x)
+        assert np.all(span.moment.x < span.farther.x)
+
     def test_that_a_rate_has_under_growing_dark_energy(self) -> None:
         """The Hubble rate first falls; values above today's stand for one epoch only."""
         rates = epochconv.convert(
@@ -265,6 +298,15 @@ class TestCuts:
             assert not np.any(found.cut_low | found.cut_high)
         assert through(0.3, error, 0.1, "redshift", "redshift").low[0] == 0.0
 
+    def test_do_not_count_rounding_at_other_ends_than_zero(self) -> None:
+        """2.7255 + e - e is below 2.7255 for many e, by an ulp or two."""
+        errors = np.linspace(0.1, 5, 100)
+        values = 2.7255 + errors
+        assert np.any(values - errors < 2.7255)
+        found = through(values, errors, 0, "CMB temperature", "redshift")
+        assert not np.any(found.cut_low)
+        assert through(3.0, 0.3, 0, "CMB temperature", "redshift").cut_low[0]
+
     def test_leave_a_modulus_without_an_end(self) -> None:
         """At redshift 0 there is none: the image goes down for ever."""
         found = through([0.1, 1], 0.5, 0.1, "redshift", "distance modulus")
@@ -286,6 +328,14 @@ class TestCuts:
         for part in found[:3]:
             assert np.isnan(part).tolist() == [True, False]
         assert not np.any(found.cut_low | found.cut_high)
+        same = through([-0.001, 1], 0.01, 0.01, "redshift", "redshift", outside="nan")
+        assert np.isnan(same.low).tolist() == np.isnan(same.high).tolist() == [True, False]
+        assert not np.any(same.cut_low | same.cut_high)
+
+    def test_do_not_ask_for_a_side_for_a_value_that_is_outside(self) -> None:
+        """Its upper end would stand for two epochs."""
+        found = through(1, 0, 68.7, "Hubble rate", "redshift", PHANTOM, outside="nan")
+        assert np.isnan([found.values[0], found.high[0]]).all()
 
 
 class TestUnknown:

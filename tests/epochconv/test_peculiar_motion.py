@@ -70,6 +70,7 @@ def test_is_refused_where_no_redshift_was_observed(measure: measures.Measure) ->
 def test_speed_is_a_number_or_a_quantity() -> None:
     registry = pint.UnitRegistry()
     assert speed_of(300) == 300.0
+    assert speed_of(0) == 0.0
     assert speed_of(registry.Quantity(3e5, "m/s")) == pytest.approx(300, rel=1e-14)
     assert speed_of(registry.Quantity(0.3, "megameter/second")) == pytest.approx(300, rel=1e-14)
 

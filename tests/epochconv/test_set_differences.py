@@ -63,6 +63,8 @@ def test_what_needs_no_history_depends_on_none() -> None:
         found = dependence([0.5, 6.0], 0.0, "redshift", target)
         assert found.difference.tolist() == [0.0, 0.0]
         assert not found.beyond_error.any()
+    itself = ["angular diameter distance"] * 2  # where no side is needed
+    assert dependence([1000.0], 1.0, *itself).difference.tolist() == [0.0]
     # Planck's temperature and WMAP's differ by 0.0005 K.
     found = dependence([1.0], 0.0, "redshift", "CMB temperature", sets=("planck 2018", "wmap 2013"))
     assert found.difference[0] == pytest.approx(0.001, rel=1e-9)
