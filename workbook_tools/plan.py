@@ -90,6 +90,11 @@ def _has_blank_target(reading: SheetReading, sources: list[int], request: Reques
     )
 
 
+def _was_measured(heading: Heading) -> bool:
+    """Tell whether a heading says that its values are observed: then none is to be computed."""
+    return bool(heading.method) or heading.frame not in ("", "CMB")
+
+
 def _targets(
     plan: SheetPlan, request: Request, source: int, source_heading: Heading
 ) -> tuple[list[tuple[int, Heading]], list[Heading]]:
@@ -115,6 +120,7 @@ def _targets(
         for column, heading in reading.headings.items()
         if column != source
         and not heading.same_kind(source_heading)
+        and not _was_measured(heading)
         and (not request.only or any(same_heading(heading.text, one) for one in request.only))
     }
     return sorted((targets | asked).items()), added
