@@ -5,73 +5,98 @@ from __future__ import annotations
 from collections.abc import Callable
 
 import numpy as np
+from numpy.typing import NDArray
 
 from epochconv.published import label_of, parameter_sets
+from epochconv.units import Unit, factor
 from workbook_tools.answers import FloatArray, Moments
 from workbook_tools.column_meanings import Heading
-from workbook_tools.errors import Refusal
 from workbook_tools.number_formats import shown_step
 from workbook_tools.typed_cells import NUMBER, ColumnCells
+
+BoolArray = NDArray[np.bool_]
 
 # Beyond the last digit shown: rounding of a half, and what 15 digits leave of a number.
 _SLACK = 1.0 + 1e-9
 _STORED = 2e-14
 
 
-def refuse_disagreement(
-    moments: Moments,
-    target: ColumnCells,
-    heading: Heading,
-    code_of: Callable[[int], str],
-    where: Callable[[int], str],
-) -> None:
-    """Raise where a filled cell differs from its row's conversion by more than its printed digits.
+class Agreement:
+    """The filled cells of one column beside what belongs there.
+
+    Attributes:
+        wrong: positions of cells that differ by more than their printed digits.
+    """
+
+    def __init__(
+        self, belongs: FloatArray, target: ColumnCells, unit: Unit, code_of: Callable[[int], str]
+    ) -> None:
+        """Compare a column.
+
+        Args:
+            belongs: what the source's conversion gives for each row, NaN for nothing.
+            target: the cells of the column.
+            unit: of the column.
+            code_of: the number format of a style.
+        """
+        typed, steps = np.full(len(belongs), np.nan), np.zeros(len(belongs))
+        for position, kind in enumerate(target.kinds):
+            if kind != NUMBER or np.isnan(belongs[position]):
+                continue
+            own = target.units.get(position, unit)
+            if own.dimension == unit.dimension:
+                number, scale = target.numbers[position], factor(own, unit)
+                typed[position] = number * scale
+                steps[position] = scale * shown_step(number, code_of(target.styles[position]))
+        self._belongs, self._typed, self._steps = belongs, typed, steps
+        self.wrong: list[int] = np.flatnonzero(self._differs(belongs)).tolist()
+
+    def faults(self, where: Callable[[int], str]) -> str:
+        """Return the first cells that disagree, with what belongs there, in words.
+
+        Args:
+            where: the address of a cell of the column, by position.
+        """
+        first = [
+            f"{where(p)} holds {self._typed[p]:.15g} where {self._belongs[p]:.6g} belongs"
+            for p in self.wrong[:3]
+        ]
+        more = f" and {len(self.wrong) - 3} more" if len(self.wrong) > 3 else ""
+        return "; ".join(first) + more
+
+    def better_set(self, moments: Moments, heading: Heading) -> str:
+        """Return the name of the published set with which all cells agree, "" for none."""
+        for one in parameter_sets():
+            values = moments.under(one.history).answers(heading).values
+            if not np.any(self._differs(values)):
+                return one.name
+        return ""
+
+    def _differs(self, belongs: FloatArray) -> BoolArray:
+        """Tell which cells differ from what belongs there; never those without a number."""
+        allowed = self._steps * _SLACK + np.abs(belongs) * _STORED
+        compared = ~np.isnan(self._typed)
+        return np.asarray(compared & ~(np.abs(belongs - self._typed) <= allowed))
+
+
+def disagreement(
+    moments: Moments, found: Agreement, heading: Heading, where: Callable[[int], str]
+) -> str:
+    """Return the sentence about a column whose cells disagree.
 
     Args:
         moments: of the source column.
-        target: the partly filled column.
-        code_of: the number format of a style.
-        where: the address of a cell of the target column, by position.
-    Raises:
-        Refusal: names the first such cells and, where there is one, the set that they agree with.
+        found: the comparison.
+        heading: of the column.
+        where: the address of a cell of the column, by position.
     """
-    values = moments.answers(heading).values
-    compared = [
-        p for p, kind in enumerate(target.kinds) if kind == NUMBER and not np.isnan(values[p])
-    ]
-    steps = np.array([shown_step(target.numbers[p], code_of(target.styles[p])) for p in compared])
-    typed = np.array([target.numbers[p] for p in compared])
-    wrong = np.flatnonzero(~_agree(values[compared], typed, steps))
-    if not len(wrong):
-        return
-    first = [
-        f"{where(compared[i])} holds {typed[i]:.15g} where {values[compared[i]]:.6g} belongs"
-        for i in wrong[:3].tolist()
-    ]
-    more = f" and {len(wrong) - 3} more" if len(wrong) > 3 else ""
-    raise Refusal(
-        f"column {heading.text!r} does not agree with {label_of(moments.history)}:"
-        f" {'; '.join(first)}{more}; nothing was filled"
-        f"{_better_set(moments, heading, compared, typed, steps)}"
+    better = found.better_set(moments, heading)
+    remedy = (
+        f"it agrees with --parameters '{better}'"
+        if better
+        else ("correct these cells, or fill another column")
     )
-
-
-def _agree(values: FloatArray, typed: FloatArray, steps: FloatArray) -> np.ndarray:
-    allowed = steps * _SLACK + np.abs(values) * _STORED
-    return np.abs(values - typed) <= allowed
-
-
-def _better_set(
-    moments: Moments,
-    heading: Heading,
-    compared: list[int],
-    typed: FloatArray,
-    steps: FloatArray,
-) -> str:
-    """Return words for the published set with which all cells agree, if there is one."""
-    for one in parameter_sets():
-        other = moments.under(one.history)
-        values = other.answers(heading).values
-        if bool(np.all(_agree(values[compared], typed, steps))):
-            return f"; it agrees with --parameters '{one.name}'"
-    return "; correct these cells, or fill another column"
+    return (
+        f"column {heading.text!r} does not agree with {label_of(moments.history)}:"
+        f" {found.faults(where)}; nothing was filled; {remedy}"
+    )

@@ -21,7 +21,9 @@ from epochconv.parameter_errors import (
 from epochconv.peculiar_motion import widened
 from epochconv.printing import number_text, with_unit
 from epochconv.published import label_of
+from epochconv.tables import HIGHEST_REDSHIFT
 from epochconv.units import factor, unit_named
+from workbook_tools.cell_address import column_letters
 from workbook_tools.column_meanings import Heading
 from workbook_tools.request import ErrorTerms
 from workbook_tools.value_columns import ValueColumn
@@ -30,6 +32,9 @@ FloatArray = NDArray[np.float64]
 
 NO_TERMS = ErrorTerms()
 
+_ABOVE = (">", "≥", "≳")
+# By this much at least a measure without an end grows in the last decade of the tables.
+_GROWING = 1.001
 _FLIPPED = {"<": ">", ">": "<", "≤": "≥", "≥": "≤", "≲": "≳", "≳": "≲"}
 
 
@@ -39,10 +44,11 @@ class Answers:
 
     Attributes:
         values: NaN where there is none.
-        lower, upper: sizes of the errors; NaN where none is known.
+        lower, upper: sizes of the errors; NaN where none is known, infinite where the interval
+            reaches to redshift 0 or to the beginning and the measure has no end there.
         limits: the sign of each limit, by position.
         reasons: why there is no value although there is a moment, by position.
-        cut: positions whose interval was cut at the end of what the source can be.
+        cut: positions whose interval was cut at the end of what source or measure can be.
     """
 
     values: FloatArray
@@ -78,7 +84,15 @@ class Moments:
         self._set = set_with_errors(history) if terms.parameters else None
         scale = _scale(source.heading, history)
         self.source, self.history, self.side = source, history, side
-        self.spread = Spread(source.values * scale, source.lower * scale, source.upper * scale)
+        # Without any error in the column, terms that somebody asks for are all there is.
+        self.exact = terms != NO_TERMS and not source.has_errors
+        self.has_errors = self.exact or source.has_errors
+        lower, upper = source.lower * scale, source.upper * scale
+        if self.exact:
+            lower = np.where(np.isnan(source.values), np.nan, 0.0)
+            lower[list(source.limits)] = np.nan
+            upper = lower
+        self.spread = Spread(source.values * scale, lower, upper)
         if terms.peculiar_velocity is not None:
             self.spread = widened(self.spread, measure, terms.peculiar_velocity)
         self.reasons: dict[int, str] = {}
@@ -92,6 +106,9 @@ class Moments:
     def error_notes(self) -> list[str]:
         """Return what was added to the errors of the source, in sentences for the report."""
         notes = []
+        if self.exact:
+            letters = column_letters(self.source.cells.column)
+            notes.append(f"column {letters} gives no errors; those written count only what follows")
         if self._set is not None:
             notes.append(parameters_text(self._set))
         if self.terms.peculiar_velocity is not None:
@@ -106,10 +123,13 @@ class Moments:
         values = image.values * scale
         missing = np.flatnonzero(np.isnan(values) & ~np.isnan(self.moment.x)).tolist()
         reasons = dict.fromkeys(missing, f"{measure.name} {measure.missing}")
-        limits = self._limits(measure, values, reasons)
+        limits = self._limits(measure, image.values, reasons)
+        values[list(set(self.source.limits) & set(reasons))] = np.nan
         lower, upper = values - image.low * scale, image.high * scale - values
-        cut = np.flatnonzero((image.cut_low | image.cut_high) & ~np.isnan(values))
-        return Answers(values, lower, upper, limits, reasons, cut.tolist())
+        upper[image.cut_high & (image.high > _endless_from(measure, self.history))] = np.inf
+        cut = (image.cut_low & np.isfinite(lower)) | (image.cut_high & np.isfinite(upper))
+        cut_at = np.flatnonzero(cut & ~np.isnan(values)).tolist()
+        return Answers(values, lower, upper, limits, reasons, cut_at)
 
     def answers_in_own_unit(self, measure: Measure) -> Image:
         """Return values and intervals of a measure, in its own unit."""
@@ -146,7 +166,7 @@ class Moments:
     def _image(self, target: Measure) -> Image:
         """Return the target's values and intervals; without errors, the values alone."""
         source = self.source.heading.measure
-        if not self.source.has_errors:
+        if not self.has_errors:
             if target is source:
                 values = np.where(np.isnan(self.moment.x), np.nan, self.spread.values)
             else:
@@ -166,28 +186,48 @@ class Moments:
     def _limits(
         self, target: Measure, values: FloatArray, reasons: dict[int, str]
     ) -> dict[int, str]:
-        """Return the signs of limits in the target, flipped where the map falls."""
-        signs = {p: s for p, s in self.source.limits.items() if not np.isnan(values[p])}
-        if not signs:
-            return {}
+        """Return the signs of limits in the target, flipped where the map falls.
+
+        A limit stays one where the target does not turn over beyond it.
+
+        Args:
+            values: of the target in its own unit; NaN where it does not exist.
+            reasons: gets why a limit stands for none.
+        """
         source = self.source.heading.measure
-        directions = _direction(source, self.history) * _direction(target, self.history)
-        if directions == 0:
-            for position in signs:
-                values[position] = np.nan
-                reasons[position] = (
-                    f"a limit, which {target.name} is not one-sided for, since its map turns over"
-                )
+        signs = {p: s for p, s in self.source.limits.items() if not np.isnan(values[p])}
+        if not signs or target is source:
+            return signs
+        if inverse.turning_points(source, self.history):
+            reason = f"a limit on {source.name}, which turns over, so it stands for no other limit"
+            reasons.update(dict.fromkeys(signs, reason))
             return {}
-        return signs if directions > 0 else {p: _FLIPPED[s] for p, s in signs.items()}
+        ends = Moment(redshift=np.array([0.0, HIGHEST_REDSHIFT]))
+        with np.errstate(divide="ignore"):
+            falls = bool(np.diff(source.value_at(ends, self.history))[0] < 0.0)
+            nearest, farthest = target.value_at(ends, self.history)
+        turns = np.array(inverse.turning_points(target, self.history))
+        found = {}
+        for position, sign in signs.items():
+            in_redshift = _FLIPPED[sign] if falls else sign
+            x, value = self.moment.x[position], values[position]
+            beyond = in_redshift in _ABOVE
+            if np.any(turns > x) if beyond else np.any(turns < x):
+                reasons[position] = (
+                    f"a limit beyond which {target.name} turns over, so it stands for none"
+                )
+                continue
+            start, end = (value, farthest) if beyond else (nearest, value)
+            rises = end > start if len(turns) else farthest > nearest
+            found[position] = in_redshift if rises else _FLIPPED[in_redshift]
+        return found
 
 
-def _direction(measure: Measure, history: ExpansionHistory) -> int:
-    """Return 1 for a measure that rises with redshift, -1 where it falls, 0 where it turns."""
-    if inverse.turning_points(measure, history):
-        return 0
-    near, far = measure.value_at(Moment(redshift=np.array([0.5, 1.0])), history)
-    return 1 if far > near else -1
+def _endless_from(measure: Measure, history: ExpansionHistory) -> float:
+    """Return the value beyond which a measure only grows into the beginning, infinity for none."""
+    moments = Moment(redshift=np.array([HIGHEST_REDSHIFT / 10.0, HIGHEST_REDSHIFT]))
+    early, earliest = measure.value_at(moments, history)
+    return float(early) if earliest > early * _GROWING else math.inf
 
 
 def _scale(heading: Heading, history: ExpansionHistory) -> float:
@@ -205,6 +245,10 @@ def _why_outside(
     """Return one reason, the same words for every cell that fails in the same way."""
     if value < low:
         if measure.unit == "" and measure.name == "redshift":
+            if value <= -1.0:
+                return (
+                    "a redshift of -1 or below is impossible; --missing declares codes for no value"
+                )
             return f"a negative redshift {measure.below}"
         words, limit = f"{measure.name} {measure.below}", low
     else:

@@ -81,10 +81,13 @@ class CellLooks:
             models = np.where(own[positions] > 0, own[positions], models)
         return [int(one) for one in models]
 
-    def of_heading(self, column: int) -> int:
-        """Return the style of the last heading up to a column, 0 where there is none."""
-        assert self.reading.header_index is not None
-        cells = self.reading.scan.cells(self.reading.header_index)
+    def of_heading(self, index: int, column: int) -> int:
+        """Return the style of the last heading up to a column in a row, 0 where there is none.
+
+        Args:
+            index: of the row in the scan.
+        """
+        cells = self.reading.scan.cells(index)
         styles = [c.style for c in cells if c.column <= column and c.column in self.reading.texts]
         return styles[-1] if styles else 0
 

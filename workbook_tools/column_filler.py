@@ -3,35 +3,25 @@
 from __future__ import annotations
 
 from array import array
+from collections import Counter
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 
 import numpy as np
 from numpy.typing import NDArray
 
 from epochconv.typed_text import typed_text
-from workbook_tools import agreement
+from workbook_tools.agreement import Agreement, disagreement
 from workbook_tools.answers import Answers, FloatArray, Moments
 from workbook_tools.cell_address import Range, column_letters
 from workbook_tools.cell_looks import CellLooks
-from workbook_tools.column_meanings import Heading, Role
-from workbook_tools.column_widths import hidden_columns
+from workbook_tools.column_meanings import ERRORS, Heading, Role
 from workbook_tools.errors import Refusal
 from workbook_tools.number_formats import significant_digits
-from workbook_tools.right_edge import right_edge
 from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_plan import FilledColumn, SheetPlan
 from workbook_tools.styles import StyleSheet
-from workbook_tools.tables import free_names
-from workbook_tools.typed_cells import (
-    EMPTY,
-    LEFT,
-    NOT_READ,
-    NUMBER,
-    SUMS_UP,
-    WHITE,
-    WORD,
-    ColumnCells,
-)
+from workbook_tools.typed_cells import EMPTY, LEFT, NOT_READ, NUMBER, WHITE, WORD, ColumnCells
 
 BoolArray = NDArray[np.bool_]
 
@@ -42,15 +32,13 @@ _HOLDS = {
     Role.LOWER_ERROR: "lower errors",
     Role.LIMIT_FLAG: "limit signs",
 }
-# Headings of new companions. E_ and e_ would differ in their case alone, which tables forbid.
-_NEW = {
-    Role.UPPER_ERROR: "upper error of {}",
-    Role.LOWER_ERROR: "lower error of {}",
-    Role.LIMIT_FLAG: "limit flag of {}",
-}
-_LIMIT_DIGITS = (3, 5)
+LIMIT_FLAG_OF = "limit flag of {}"
+"""Heading of a column of signs, for the name of the column that it belongs to."""
 
-NewColumn = tuple[Role, Heading, str]
+_LIMIT_DIGITS = (3, 5)
+_CUT = "an error that reaches beyond what is possible, cut there"
+# Sides of an error that differ by less are shown alike.
+_SYMMETRIC = 1e-3
 
 
 class ColumnFiller:
@@ -67,132 +55,54 @@ class ColumnFiller:
         self.wanted = np.zeros(len(self.source.values), dtype=bool)
         self._known: dict[Heading, Answers] = {}
 
-    def fill_existing(self, targets: Sequence[tuple[int, Heading]]) -> None:
-        """Plan the blanks of columns that are there, and of the companions that they have."""
+    def fill_existing(self, targets: Sequence[tuple[int, Heading]]) -> list[int]:
+        """Plan the blanks of columns that are there, and of the companions that they have.
+
+        Returns:
+            The columns whose values are those of the source now, as they were or filled.
+        Raises:
+            Refusal: the filled cells of a column with blanks disagree, or it cannot be written to.
+        """
+        converted = []
         for column, heading in targets:
             (target,) = self.reading.columns([column])
             self._report_kept(target)
-            if self._has_room(target):
-                self._refuse_blocked(column)
-                if target.count(NUMBER):
-                    agreement.refuse_disagreement(
-                        self.moments, target, heading, self.looks.code, self._where(column)
-                    )
-                self._fill(Role.VALUE, heading, column, target)
-            for role in (Role.ERROR, Role.UPPER_ERROR, Role.LOWER_ERROR, Role.LIMIT_FLAG):
-                companion = self.reading.companion(column, role)
-                if companion is None:
-                    continue
-                (cells,) = self.reading.columns([companion])
-                if self._has_room(cells):
-                    self._refuse_blocked(companion)
-                    self._fill(role, heading, companion, cells)
+            has_room = self._has_room(target)
+            if has_room:
+                self._refuse_blocked(target)
+            if target.count(NUMBER) and not self._agrees(target, heading, has_room):
+                continue
+            converted.append(column)
+            if has_room:
+                self.put(Role.VALUE, heading, column, target)
+            for role in (*ERRORS, Role.LIMIT_FLAG):
+                self._fill_companion(role, heading, column)
+        return converted
 
-    def append(self, headings: Sequence[Heading], filled: Sequence[Heading], errors: bool) -> None:
-        """Plan new columns at the right edge of the data, where there is a value for any cell.
+    def put(
+        self, role: Role, heading: Heading, column: int, target: ColumnCells | None, text: str = ""
+    ) -> NewCells:
+        """Add a column's new cells to the plan and return them.
 
         Args:
-            headings: of the columns that were asked for.
-            filled: of existing columns that are filled.
-            errors: whether columns get error columns where they have none.
+            role: whether it holds values, errors of one side or both, or the signs of limits.
+            heading: what it holds, or the column to which its errors or signs belong.
+            target: the column where it is there already; None for a new one.
+            text: the heading of a new one.
         """
-        wanted: list[NewColumn] = []
-        for heading in headings:
-            wanted.append((Role.VALUE, heading, heading.text))
-            wanted += self._companions(heading, errors)
-        if errors and self.source.has_errors:
-            for heading in filled:
-                wanted += self._error_columns(heading)
-        if not wanted:
-            return
-        if np.all(np.isnan(self.moments.moment.x)):
-            self.wanted[:] = True
-            return
-        first, table, note = right_edge(self.reading, self.source.cells.column, len(wanted))
-        self.plan.notes += [note] if note else []
-        names = [text for _, _, text in wanted]
-        if table is not None:
-            names = free_names(names, table.columns)
-            self.plan.grown = (table, names)
-        hidden = hidden_columns(self.reading.scan)
-        style = 0
-        for offset, ((role, heading, _), name) in enumerate(zip(wanted, names, strict=True)):
-            column = first + offset
-            cells = self._fill(role, heading, column, None, name)
-            if self.reading.header_row is not None:
-                style = self.looks.of_heading(first - 1)
-                cells.texts[self.reading.header_row] = (name, style)
-            cells.width = float(min(max(len(name) + 3, 11), 15 if self.looks.wraps(style) else 40))
-            if column in hidden:
-                self.plan.notes.append(
-                    f"column {column_letters(column)} was hidden and is shown, as it is new"
-                )
-        if self.reading.header_row is None:
-            self.plan.notes.append("no row of headings was found, so the new columns have none")
-
-    def report_source(self) -> None:
-        """List what stays unfilled because of the source column, and what to know of the rest."""
-        source, column = self.source, self.source.cells.column
-        where = self._where(column)
-        for position in sorted(set(source.reasons) | set(self.moments.reasons)):
-            if not self.wanted[position]:
-                continue
-            reason = source.reasons.get(position) or self.moments.reasons[position]
-            repeated = f"{NOT_READ}{self.reading.texts.get(column, '').strip()} ("
-            if reason == SUMS_UP or reason.startswith(repeated):
-                self.plan.passed_over.append(where(position))
-            else:
-                self.plan.left.append((where(position), reason))
-        for remark, positions in source.remarks.items():
-            asked = [where(p) for p in positions if self.wanted[p]]
-            if asked:
-                self.plan.remarks.setdefault(remark, []).extend(asked)
-        if any(one.rows or one.texts for one in self.plan.cells):
-            self.plan.notes += source.notes
-
-    def _companions(self, heading: Heading, errors: bool) -> list[NewColumn]:
-        """Return the companions that a new column gets: errors on request, signs where needed."""
-        found = self._error_columns(heading) if errors and self.source.has_errors else []
-        if self.source.flagged and self._answers(heading).limits:
-            flag = _NEW[Role.LIMIT_FLAG].format(heading.name)
-            found.append((Role.LIMIT_FLAG, heading, flag))
-        return found
-
-    def _error_columns(self, heading: Heading) -> list[NewColumn]:
-        """Return the error columns that a column still lacks."""
-        column = next((c for c, one in self.reading.headings.items() if one == heading), None)
-        if column is not None and any(
-            self.reading.companion(column, role) is not None
-            for role in (Role.ERROR, Role.UPPER_ERROR, Role.LOWER_ERROR)
-        ):
-            return []
-        return [
-            (role, heading, _NEW[role].format(heading.text))
-            for role in (Role.UPPER_ERROR, Role.LOWER_ERROR)
-        ]
-
-    def _fill(
-        self,
-        role: Role,
-        heading: Heading,
-        column: int,
-        target: ColumnCells | None,
-        text: str = "",
-    ) -> NewCells:
-        """Add a column's new cells to the plan."""
         blank = np.ones(len(self.wanted), dtype=bool)
         if target is not None:
             blank = np.frombuffer(target.kinds, dtype=np.uint8) <= EMPTY
         self.wanted |= blank
-        answers = self._answers(heading)
+        answers = self.answers(heading)
         cells = NewCells(column)
         signs: dict[int, str] = {}
         if role is Role.VALUE:
+            self._leave(answers.reasons, blank, column)
             signs = self._limit_texts(answers, blank, heading, target)
             plain = blank & ~np.isnan(answers.values)
-            plain[list(self._textual(answers))] = False
+            plain[list(signs)] = False
             self._put_numbers(cells, answers.values, plain, target)
-            self._leave(answers.reasons, blank, column)
         elif role is Role.LIMIT_FLAG:
             signs = {p: sign for p, sign in answers.limits.items() if blank[p]}
         else:
@@ -214,14 +124,83 @@ class ColumnFiller:
         )
         return cells
 
-    def _textual(self, answers: Answers) -> dict[int, str]:
-        """Return the limits that this log writes as text: all, or none where signs stand apart."""
-        return {} if self.source.flagged else answers.limits
+    def answers(self, heading: Heading) -> Answers:
+        """Return what a column with that heading holds for each row."""
+        known = self._known.get(heading)
+        if known is None:
+            known = self._known[heading] = self.moments.answers(heading)
+        return known
+
+    def report_source(self) -> None:
+        """List what stays unfilled because of the source column, and what to know of the rest."""
+        source, column = self.source, self.source.cells.column
+        where = self._where(column)
+        passed = [(p, why) for p, why in source.passed_over.items() if self.wanted[p]]
+        self.plan.passed_over += [(where(p), why) for p, why in sorted(passed)]
+        for position in sorted(set(source.reasons) | set(self.moments.reasons)):
+            if self.wanted[position]:
+                reason = source.reasons.get(position) or self.moments.reasons[position]
+                self.plan.left.append((where(position), reason))
+        for remark, positions in source.remarks.items():
+            asked = [where(p) for p in positions if self.wanted[p]]
+            if asked:
+                self.plan.remarks.setdefault(remark, []).extend(asked)
+        words = Counter(
+            word
+            for p, word in source.cells.shown.items()
+            if source.cells.kinds[p] == WORD and self.wanted[p] and p not in source.passed_over
+        )
+        if words:
+            listed = ", ".join(f"{word} ({count})" for word, count in words.most_common())
+            self.plan.notes.append(f"no value in column {column_letters(column)}: {listed}")
+        self.plan.notes += source.notes
+
+    def _agrees(self, target: ColumnCells, heading: Heading, has_room: bool) -> bool:
+        """Tell whether a column holds what the source gives; one with blanks must.
+
+        Raises:
+            Refusal: it has blanks, and does not agree.
+        """
+        values = self.answers(heading).values
+        found = Agreement(values, target, heading.unit, self.looks.code)
+        if found.wrong and has_room:
+            where = self._where(target.column)
+            raise Refusal(disagreement(self.moments, found, heading, where))
+        return not found.wrong
+
+    def _fill_companion(self, role: Role, heading: Heading, owner: int) -> None:
+        """Plan the blanks of a companion; errors that disagree are left alone and named."""
+        column = self.reading.companion(owner, role)
+        if column is None:
+            return
+        (cells,) = self.reading.columns([column])
+        if not self._has_room(cells):
+            return
+        if role in ERRORS and not self.moments.has_errors:
+            self.plan.notes.append(
+                f"column {column_letters(column)} stays blank, since column"
+                f" {column_letters(self.source.cells.column)} gives no errors"
+            )
+            return
+        meaning = self.reading.meanings[column]
+        if meaning.unit is not None:
+            heading = replace(heading, unit=meaning.unit)
+        if role in ERRORS and cells.count(NUMBER):
+            sizes = _sizes_for(role, self.answers(heading))
+            found = Agreement(sizes, cells, heading.unit, self.looks.code)
+            if found.wrong:
+                self.plan.notes.append(
+                    f"column {column_letters(column)} is left alone, since its errors are others:"
+                    f" {found.faults(self._where(column))}"
+                )
+                return
+        self._refuse_blocked(cells)
+        self.put(role, heading, column, cells)
 
     def _limit_texts(
         self, answers: Answers, blank: BoolArray, heading: Heading, target: ColumnCells | None
     ) -> dict[int, str]:
-        """Return the limits as the log writes them, as text; number and sign apart are no text."""
+        """Return the limits that this log writes as text: all, or none where signs stand apart."""
         if self.source.flagged:
             self._leave_unsigned(answers, blank, heading, target)
             return {}
@@ -235,7 +214,7 @@ class ColumnFiller:
 
     def _limit_digits(self, position: int) -> int:
         """Return how many digits a limit gets: as many as its source has, three to five."""
-        digits = significant_digits(float(self.source.values[position]))
+        digits = significant_digits(self.source.cells.numbers[position])
         return min(max(digits, _LIMIT_DIGITS[0]), _LIMIT_DIGITS[1])
 
     def _leave_unsigned(
@@ -244,35 +223,37 @@ class ColumnFiller:
         """Leave limits whose sign would have no place: they never become plain numbers."""
         if target is None or self.reading.companion(target.column, Role.LIMIT_FLAG) is not None:
             return
-        flag = _NEW[Role.LIMIT_FLAG].format(heading.name)
+        flag = LIMIT_FLAG_OF.format(heading.name)
         reason = f"a limit, whose sign needs a column headed {flag!r}"
-        unsigned = dict.fromkeys(answers.limits, reason)
-        self._leave(unsigned, blank, target.column)
-        for position in answers.limits:
-            blank[position] = False
+        self._leave(dict.fromkeys(answers.limits, reason), blank, target.column)
+        blank[list(answers.limits)] = False
 
     def _sizes(
         self, role: Role, answers: Answers, blank: BoolArray, column: int
     ) -> tuple[FloatArray, BoolArray]:
         """Return the sizes of errors for an error column, and where they go."""
-        sizes = {
-            Role.LOWER_ERROR: answers.lower,
-            Role.UPPER_ERROR: answers.upper,
-            Role.ERROR: np.maximum(answers.lower, answers.upper),
-        }[role]
-        endless = np.flatnonzero(np.isinf(sizes) & blank).tolist()
-        self._leave(dict.fromkeys(endless, "an error that reaches to redshift 0"), blank, column)
-        if role is Role.ERROR and np.any(blank & np.isfinite(sizes)):
+        sizes = _sizes_for(role, answers)
+        endless = {
+            p: "an error that reaches to redshift 0"
+            if np.isinf(answers.lower[p])
+            else "an error that reaches to the beginning"
+            for p in np.flatnonzero(np.isinf(sizes) & blank).tolist()
+        }
+        self._leave(endless, blank, column)
+        where = blank & np.isfinite(sizes)
+        uneven = np.abs(answers.upper[where] - answers.lower[where]) > _SYMMETRIC * sizes[where]
+        if role is Role.ERROR and np.any(uneven):
             self.plan.notes.append(
                 f"column {column_letters(column)} holds the larger side of errors that are not"
-                " symmetric; for both sides use --with-errors or columns headed E_ and e_"
+                " symmetric; for both sides use columns headed 'upper error of' and"
+                " 'lower error of'"
             )
         cut = [self._where(self.source.cells.column)(p) for p in answers.cut if blank[p]]
         if cut:
-            remark = "an error that reaches beyond what is possible, cut there"
-            known = self.plan.remarks.setdefault(remark, [])
-            known += [one for one in cut if one not in set(known)]
-        return sizes, blank & np.isfinite(sizes)
+            known = self.plan.remarks.setdefault(_CUT, [])
+            held = set(known)
+            known += [one for one in cut if one not in held]
+        return sizes, where
 
     def _put_numbers(
         self, cells: NewCells, values: FloatArray, where: BoolArray, target: ColumnCells | None
@@ -294,12 +275,6 @@ class ColumnFiller:
             row = self.reading.scan.numbers[self.reading.rows[position]]
             cells.texts[row] = (texts[position], style)
 
-    def _answers(self, heading: Heading) -> Answers:
-        known = self._known.get(heading)
-        if known is None:
-            known = self._known[heading] = self.moments.answers(heading)
-        return known
-
     def _has_room(self, target: ColumnCells) -> bool:
         """Tell whether a blank cell of the column stands beside something in the source."""
         blank = np.frombuffer(target.kinds, dtype=np.uint8) <= EMPTY
@@ -311,7 +286,7 @@ class ColumnFiller:
         kinds = np.frombuffer(target.kinds, dtype=np.uint8)
         held = (kinds == WHITE) | (kinds == WORD) | (kinds == LEFT)
         for position in np.flatnonzero(held & ~np.isnan(self.moments.moment.x)).tolist():
-            shown = target.reasons.get(position, "white space or a word for no value")
+            shown = target.shown.get(position) or target.reasons.get(position, "white space")
             address = self._where(target.column)(position)
             self.plan.left.append((address, f"not overwritten: {shown.removeprefix(NOT_READ)}"))
 
@@ -322,13 +297,35 @@ class ColumnFiller:
     def _where(self, column: int) -> Callable[[int], str]:
         return lambda position: self.reading.where(position, column)
 
-    def _refuse_blocked(self, column: int) -> None:
+    def _refuse_blocked(self, target: ColumnCells) -> None:
+        """Raise where cells cannot be written to; a merge matters where a value would go into it.
+
+        Raises:
+            Refusal: it names the rectangle.
+        """
         scan, rows = self.reading.scan, self.reading.rows
-        area = Range(scan.numbers[rows[0]], column, scan.numbers[rows[-1]], column)
+        numbers, column = scan.numbers, target.column
+        area = Range(numbers[rows[0]], column, numbers[rows[-1]], column)
+        blank = np.frombuffer(target.kinds, dtype=np.uint8) <= EMPTY
+        busy = blank & ~np.isnan(self.moments.moment.x)
         for one in self.reading.blocked:
-            if one.intersects(area):
-                raise Refusal(
-                    f"column {column_letters(column)} of sheet {self.reading.sheet.name!r} meets"
-                    f" {one.a1}, which is merged or belongs to one formula; fill another column, or"
-                    " undo that first"
-                )
+            if not one.intersects(area):
+                continue
+            inside = scan.rows_between(one.first_row, one.last_row)
+            here = [i - rows.start for i in inside if rows.start <= i < rows.stop]
+            if one in self.reading.merged and not np.any(busy[here]):
+                continue
+            raise Refusal(
+                f"column {column_letters(column)} of sheet {self.reading.sheet.name!r} meets"
+                f" {one.a1}, which is merged or belongs to one formula; fill another column, or"
+                " undo that first"
+            )
+
+
+def _sizes_for(role: Role, answers: Answers) -> FloatArray:
+    """Return the sizes of errors that a column of that role holds."""
+    if role is Role.LOWER_ERROR:
+        return answers.lower
+    if role is Role.UPPER_ERROR:
+        return answers.upper
+    return np.maximum(answers.lower, answers.upper)

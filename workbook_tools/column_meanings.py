@@ -22,6 +22,9 @@ class Role(StrEnum):
     OTHER = "other"
 
 
+ERRORS = (Role.ERROR, Role.UPPER_ERROR, Role.LOWER_ERROR)
+
+
 @dataclass(frozen=True)
 class Heading:
     """A recognised heading.
@@ -43,6 +46,11 @@ class Heading:
     frame: str = ""
     method: str = ""
     name: str = ""
+
+    @property
+    def unit_text(self) -> str:
+        """The unit as it is written behind a name, "" for none."""
+        return f"h^{self.h_power} {self.unit.symbol}" if self.h_power else self.unit.symbol
 
     def same_kind(self, other: Heading) -> bool:
         """Tell whether the other one holds the same measure in the same unit."""

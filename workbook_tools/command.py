@@ -244,8 +244,9 @@ def _look(options: argparse.Namespace) -> int:
         print(json.dumps(look_json(seen), ensure_ascii=False, allow_nan=False, indent=1))
     else:
         print(look_text(seen))
-    left = any(one.plan is not None and one.plan.left for one in seen.sheets)
-    return 2 if seen.stop else 3 if left else 0
+    if seen.stop is not None:
+        return 1 if isinstance(seen.stop, Refusal) else 2
+    return 3 if seen.left else 0
 
 
 def _fault_of_report(report: Path, workbook: Path) -> str | None:

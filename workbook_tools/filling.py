@@ -65,7 +65,7 @@ class FillResult:
     @property
     def filled(self) -> int:
         """How many cells were filled."""
-        return sum(len(one.rows) for plan in self.plans for one in plan.cells)
+        return sum(plan.filled for plan in self.plans)
 
 
 def fill(

@@ -16,9 +16,9 @@ def look_text(seen: Look) -> str:
     """Return what was seen as text."""
     lines = []
     for sheet in seen.sheets:
-        lines += _sheet_text(sheet)
+        lines += _sheet_text(sheet, stopped=seen.stop is not None)
     lines += [f"note: {warning}" for warning in seen.warnings]
-    if seen.stop:
+    if seen.stop is not None:
         lines.append(f"a fill would stop: {seen.stop}")
     lines.append(f"under {label_of(seen.history)}: {seen.history.assumptions}")
     return "\n".join(lines)
@@ -34,12 +34,12 @@ def look_json(seen: Look) -> dict[str, Any]:
             "assumptions": seen.history.assumptions,
         },
         "sheets": [_sheet_data(sheet) for sheet in seen.sheets],
-        "stop": seen.stop or None,
+        "stop": None if seen.stop is None else str(seen.stop),
         "warnings": seen.warnings,
     }
 
 
-def _sheet_text(seen: SeenSheet) -> list[str]:
+def _sheet_text(seen: SeenSheet, *, stopped: bool) -> list[str]:
     name = f"sheet {seen.sheet.name!r}"
     if seen.sheet.kind is not SheetKind.WORKSHEET:
         return [f"{name}: a {seen.sheet.kind}, nothing to fill"]
@@ -55,7 +55,7 @@ def _sheet_text(seen: SeenSheet) -> list[str]:
     if others:
         lines.append(f"  none of ours: {', '.join(others)}")
     if seen.plan is None:
-        lines.append("  nothing to fill")
+        lines += [] if stopped else ["  nothing to fill"]
     else:
         lines.append("  a fill would do this:")
         lines += [f"  {line}" for line in sheet_lines(seen.plan, None)[1:]]
@@ -92,13 +92,15 @@ def _meaning_text(meaning: Meaning) -> str:
 def _cell_lines(cells: CellKinds) -> list[str]:
     parts = []
     for kind, count in cells.counts.items():
-        place = "" if kind in ("numbers", "blank") else f" (first {cells.first[kind]})"
-        parts.append(f"{count} {kind}{place}")
+        words = f": {', '.join(f'{w} ({n})' for w, n in cells.words.items())}"
+        said = words if kind == "no value" else ""
+        parts.append(f"{count} {kind} (first {cells.first[kind]}{said})")
     lines = [", ".join(parts)] if parts else []
-    return lines + [
-        f"left {count}: {reason} (first {first})"
-        for reason, (count, first) in cells.reasons.items()
-    ]
+    for verb, grouped in (("left", cells.left), ("read", cells.remarks)):
+        lines += [
+            f"{verb} {count}: {why} (first {first})" for why, (count, first) in grouped.items()
+        ]
+    return lines
 
 
 def _sheet_data(seen: SeenSheet) -> dict[str, Any]:
@@ -132,9 +134,12 @@ def _column_data(seen: SeenColumn) -> dict[str, Any]:
         else {
             "counts": seen.cells.counts,
             "first": seen.cells.first,
-            "left": {
-                reason: {"count": count, "first": first}
-                for reason, (count, first) in seen.cells.reasons.items()
-            },
+            "left": _counted(seen.cells.left),
+            "remarks": _counted(seen.cells.remarks),
+            "words_for_no_value": seen.cells.words,
         },
     }
+
+
+def _counted(grouped: dict[str, tuple[int, str]]) -> dict[str, dict[str, Any]]:
+    return {why: {"count": count, "first": first} for why, (count, first) in grouped.items()}

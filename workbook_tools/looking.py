@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from collections import Counter
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, field
 from pathlib import Path
 from typing import Unpack
@@ -10,14 +12,15 @@ import numpy as np
 
 from epochconv.errors import EpochconvError
 from epochconv.history import ExpansionHistory
-from workbook_tools.column_meanings import Meaning, Role
+from workbook_tools.column_meanings import ERRORS, Meaning, Role
 from workbook_tools.open_workbook import OpenWorkbook
 from workbook_tools.parts import Sheet, SheetKind
 from workbook_tools.plan_of_workbook import plan_workbook
 from workbook_tools.request import Choices, request_of
 from workbook_tools.sheet_plan import SheetPlan
 from workbook_tools.sheet_reading import SheetReading
-from workbook_tools.typed_cells import LEFT, LIMIT, NUMBER, WORD
+from workbook_tools.typed_cells import LIMIT, NUMBER, WORD
+from workbook_tools.value_columns import read_values
 
 
 @dataclass(frozen=True)
@@ -25,14 +28,19 @@ class CellKinds:
     """How the cells of a column read: counts, and the address of the first of each.
 
     Attributes:
-        counts: by kind: "numbers", "limits", "with errors", "blank", "no value", "left".
+        counts: by kind: "numbers", "limits", "with errors", "blank", "no value", "left",
+            "passed over".
         first: address of the first, by kind.
-        reasons: of cells that are left: how many and the first, by reason.
+        left: of cells that are left: how many and the first, by reason.
+        remarks: of cells that are read with a remark: how many and the first, by remark.
+        words: how often each word for "no value" stands.
     """
 
     counts: dict[str, int]
     first: dict[str, str]
-    reasons: dict[str, tuple[int, str]]
+    left: dict[str, tuple[int, str]]
+    remarks: dict[str, tuple[int, str]]
+    words: dict[str, int]
 
 
 @dataclass(frozen=True)
@@ -72,15 +80,20 @@ class Look:
         label: name of the file.
         history: under which a fill would convert.
         sheets: in the order of their tabs.
-        stop: why a fill would stop, "" if it would not.
+        stop: why a fill would stop, None if it would not.
         warnings: sentences about the workbook.
     """
 
     label: str
     history: ExpansionHistory
     sheets: list[SeenSheet]
-    stop: str
+    stop: EpochconvError | None
     warnings: list[str]
+
+    @property
+    def left(self) -> bool:
+        """Whether a fill would leave cells with a reason."""
+        return any(one.plan is not None and one.plan.left for one in self.sheets)
 
 
 def look(path: str | Path, **choices: Unpack[Choices]) -> Look:
@@ -94,12 +107,12 @@ def look(path: str | Path, **choices: Unpack[Choices]) -> Look:
     request = request_of(**choices)
     workbook = OpenWorkbook(Path(path), keeps_readings=True)
     plans: list[SheetPlan] = []
-    notes: list[str] = []
-    stop = ""
+    stop = None
     try:
-        plans, notes = plan_workbook(workbook, request)
+        # Its notes are about unclear headings, which stand with their columns here.
+        plans, _ = plan_workbook(workbook, request)
     except EpochconvError as error:
-        stop = str(error)
+        stop = error
     meant = workbook.sheets(request.sheet)
     sheets = []
     for sheet in workbook.map.sheets:
@@ -108,7 +121,7 @@ def look(path: str | Path, **choices: Unpack[Choices]) -> Look:
             sheets.append(_seen(workbook.reading(sheet, request), plan))
         elif request.sheet is None:
             sheets.append(SeenSheet(sheet))
-    return Look(workbook.label, request.history, sheets, stop, [*workbook.map.warnings, *notes])
+    return Look(workbook.label, request.history, sheets, stop, list(workbook.map.warnings))
 
 
 def _seen(reading: SheetReading, plan: SheetPlan | None) -> SeenSheet:
@@ -119,7 +132,7 @@ def _seen(reading: SheetReading, plan: SheetPlan | None) -> SeenSheet:
             column,
             " ".join(reading.texts.get(column, "").split()),
             meaning,
-            _kinds(reading, column) if _matters(meaning) else None,
+            _kinds(reading, column, meaning),
         )
         for column, meaning in sorted(reading.meanings.items())
     ]
@@ -131,23 +144,51 @@ def _matters(meaning: Meaning) -> bool:
     return meaning.role is Role.VALUE or meaning.role in errors
 
 
-def _kinds(reading: SheetReading, column: int) -> CellKinds:
-    (cells,) = reading.columns([column])
+def _kinds(reading: SheetReading, column: int, meaning: Meaning) -> CellKinds | None:
+    """Return how the cells of a column of values or errors read; None for other columns."""
+    if meaning.role is Role.VALUE and meaning.heading is not None:
+        values = read_values(reading, column, meaning.heading)
+        cells, reasons, remarks = values.cells, values.reasons, values.remarks
+        passed = values.passed_over
+        limits, known = values.limits, ~np.isnan(values.values)
+        errors = np.flatnonzero(~np.isnan(values.lower)).tolist()
+    elif meaning.role in ERRORS:
+        (cells,) = reading.columns([column])
+        reasons, remarks, limits, passed, errors = (
+            cells.reasons,
+            cells.remarks,
+            cells.limits,
+            {},
+            [],
+        )
+        known = np.isin(np.frombuffer(cells.kinds, dtype=np.uint8), (NUMBER, LIMIT))
+    else:
+        return None
     kinds = np.frombuffer(cells.kinds, dtype=np.uint8)
     places = {
-        "numbers": np.flatnonzero(kinds == NUMBER).tolist(),
-        "limits": np.flatnonzero(kinds == LIMIT).tolist(),
-        "with errors": sorted(cells.errors),
+        "numbers": [p for p in np.flatnonzero(known).tolist() if p not in limits],
+        "limits": sorted(limits),
+        "with errors": errors,
         "blank": np.flatnonzero(kinds < WORD).tolist(),
-        "no value": np.flatnonzero(kinds == WORD).tolist(),
-        "left": np.flatnonzero(kinds == LEFT).tolist(),
+        "no value": [p for p in np.flatnonzero(kinds == WORD).tolist() if p not in passed],
+        "left": sorted(reasons),
+        "passed over": sorted(passed),
     }
-    reasons: dict[str, tuple[int, str]] = {}
-    for position, reason in sorted(cells.reasons.items()):
-        count, first = reasons.get(reason, (0, reading.where(position, column)))
-        reasons[reason] = (count + 1, first)
     return CellKinds(
         {kind: len(found) for kind, found in places.items() if found},
         {kind: reading.where(found[0], column) for kind, found in places.items() if found},
-        reasons,
+        _by_words(reading, column, ((reason, [p]) for p, reason in sorted(reasons.items()))),
+        _by_words(reading, column, remarks.items()),
+        dict(Counter(cells.shown[p] for p in places["no value"])),
     )
+
+
+def _by_words(
+    reading: SheetReading, column: int, cells: Iterable[tuple[str, Sequence[int]]]
+) -> dict[str, tuple[int, str]]:
+    """Return how many cells there are for each reason or remark, and the address of the first."""
+    found: dict[str, tuple[int, str]] = {}
+    for words, positions in cells:
+        count, first = found.get(words, (0, reading.where(min(positions), column)))
+        found[words] = (count + len(positions), first)
+    return found

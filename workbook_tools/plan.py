@@ -17,6 +17,7 @@ from workbook_tools.column_filler import ColumnFiller
 from workbook_tools.column_meanings import Heading
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import same_heading
+from workbook_tools.new_columns import append_columns
 from workbook_tools.number_formats import format_for
 from workbook_tools.request import Request
 from workbook_tools.right_edge import free_columns
@@ -52,32 +53,65 @@ def plan_sheet(reading: SheetReading, request: Request, styles: StyleSheet | Non
     values = read_values(reading, column, heading)
     moments = Moments(values, request.history, request.side, request.error_terms)
     filler = ColumnFiller(plan, moments, styles)
-    filler.fill_existing(targets)
-    filler.append(added, [one for _, one in targets], request.with_errors)
+    existing = filler.fill_existing(targets)
+    append_columns(filler, added, existing, request.with_errors)
     filler.report_source()
+    plan.notes += _about_errors(plan, moments, request)
     if plan.changed:
-        plan.notes += moments.error_notes()
+        plan.notes += _about_reading(request)
         plan.notes += column_warnings(moments, [one.heading for one in plan.columns])
     return plan
+
+
+def _about_errors(plan: SheetPlan, moments: Moments, request: Request) -> list[str]:
+    """Return what the errors written count, or why none are written."""
+    column = column_letters(moments.source.cells.column)
+    if any("error" in one.holds and one.count for one in plan.columns):
+        return moments.error_notes()
+    if not moments.has_errors:
+        return [f"column {column} gives no errors to carry"] if request.with_errors else []
+    if request.with_errors or not plan.changed:
+        return []
+    what = (
+        "what was asked to count in errors" if moments.exact else f"the errors of column {column}"
+    )
+    return [f"{what} went nowhere, as no column holds errors; --with-errors appends some"]
+
+
+def _about_reading(request: Request) -> list[str]:
+    """Return by which choices cells were read otherwise than they are by default."""
+    notes = []
+    if request.decimal_comma:
+        notes.append("commas in typed numbers were taken for decimal marks (--decimal-comma)")
+    if request.brackets_are_notes:
+        notes.append("brackets behind numbers were taken for notes (--brackets-are-notes)")
+    if request.missing:
+        listed = ", ".join(f"{number:g}" for number in request.missing)
+        notes.append(f"taken for no value, as declared with --missing: {listed}")
+    return notes
 
 
 def _source(reading: SheetReading, request: Request) -> tuple[int, Heading] | None:
     if request.source is not None:
         found = source_choice.named_source(reading, request)
-        if found is not None and reading.header_index is None:
+        if found is not None and reading.header is None:
             reading.take_header_above(found[0])
         return found
     if request.source_measure is not None:
         raise UsageError("--as says what a column holds; name that column with --source")
     sources = source_choice.possible_sources(reading)
-    if len(sources) > 1 and _has_blank_target(reading, sources, request):
-        source_choice.refuse_several(reading, sources)
+    if len(sources) > 1:
+        if _has_blank_target(reading, sources, request):
+            source_choice.refuse_several(reading, sources)
+        waited_for = source_choice.waited_for(reading, sources, request.with_errors)
+        source_choice.refuse_several(reading, waited_for)
+        sources = waited_for or sources
     return (sources[0], reading.headings[sources[0]]) if sources else None
 
 
 def _has_blank_target(reading: SheetReading, sources: list[int], request: Request) -> bool:
     """Tell whether anything waits to be filled from one of several possible sources."""
-    if request.add:
+    if any(not source_choice.called(reading, text) for text in request.add):
         return True
     columns = reading.columns(list(reading.headings))
     filled = [one for one in columns if one.column in sources]
@@ -106,7 +140,7 @@ def _targets(
         heading = source_choice.known_heading(text, "--add")
         if any(same_heading(one.text, text) for one in added):
             continue
-        twin = next((c for c, t in reading.texts.items() if same_heading(t, text)), None)
+        twin = next(iter(source_choice.called(reading, text)), None)
         if twin is not None:
             plan.notes.append(
                 f"{text!r} is there already (column {column_letters(twin)}), so no column is added"
@@ -121,7 +155,7 @@ def _targets(
         if column != source
         and not heading.same_kind(source_heading)
         and not _was_measured(heading)
-        and (not request.only or any(same_heading(heading.text, one) for one in request.only))
+        and (not request.only or any(source_choice.is_called(heading, one) for one in request.only))
     }
     return sorted((targets | asked).items()), added
 

@@ -2,12 +2,13 @@
 
 from __future__ import annotations
 
+from workbook_tools.column_meanings import Heading
 from workbook_tools.errors import Refusal, UsageError
-from workbook_tools.headings import same_heading
 from workbook_tools.open_workbook import OpenWorkbook
 from workbook_tools.plan import plan_sheet
 from workbook_tools.request import Request
 from workbook_tools.sheet_plan import SheetPlan
+from workbook_tools.source_choice import is_called
 
 
 def plan_workbook(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetPlan], list[str]]:
@@ -19,19 +20,20 @@ def plan_workbook(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetP
     """
     plans: list[SheetPlan] = []
     notes: list[str] = []
-    headings: list[str] = []
+    headings: list[Heading] = []
     for sheet in workbook.sheets(request.sheet):
         reading = workbook.reading(sheet, request)
         if request.source is None and not reading.headings:
             continue
         plan = plan_sheet(reading, request, workbook.styles)
-        notes += reading.lacking_units()
-        headings += [heading.text for heading in reading.headings.values()]
+        source = next((one.source_column for one in plan.columns), None)
+        notes += reading.doubts(source)
+        headings += reading.headings.values()
         if plan.columns or plan.left or plan.notes:
             plans.append(plan)
             workbook.hold(sheet.part, reading.scan.xml)
     for text in request.only:
-        if not any(same_heading(text, heading) for heading in headings):
+        if not any(is_called(heading, text) for heading in headings):
             raise UsageError(
                 f"--only {text!r} is no heading of {workbook.label} that can be filled; name one as"
                 " it stands, such as 'Age [Gyr]'"

@@ -59,9 +59,9 @@ def sheet_data(plan: SheetPlan, dependents: Dependents | None) -> dict[str, Any]
         "sheet": plan.reading.sheet.name,
         "header_row": plan.reading.header_row,
         "columns": [_column_data(column) for column in plan.columns],
-        "left": [{"cell": cell, "reason": reason} for cell, reason in plan.left],
+        "left": _listed(plan.left),
         "remarks": plan.remarks,
-        "passed_over": plan.passed_over,
+        "passed_over": _listed(plan.passed_over),
         "notes": plan.notes,
         "readers": _reader_data(dependents),
     }
@@ -77,12 +77,10 @@ def sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
         origin = f"{column_letters(column.source_column)} {column.source.text!r}"
         new = "new column " if column.added else ""
         cells_filled = "1 cell" if column.count == 1 else f"{column.count} cells"
-        limits = f", {column.limits} of them limits" if column.limits else ""
+        count = column.limits
+        limits = f", {count} of them {'a limit' if count == 1 else 'limits'}" if count else ""
         lines.append(f"  {new}{place}: {cells_filled} filled from {origin}{limits}")
-    cells: dict[str, list[str]] = {}
-    for cell, reason in plan.left:
-        cells.setdefault(reason, []).append(cell)
-    by_count = sorted(cells.items(), key=lambda item: -len(item[1]))
+    by_count = sorted(_by_reason(plan.left).items(), key=lambda item: -len(item[1]))
     for reason, where in by_count[:_FIRST_REASONS]:
         lines.append(f"  left {len(where)}: {reason} ({_first(where)})")
     further = by_count[_FIRST_REASONS:]
@@ -91,11 +89,8 @@ def sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
         lines.append(
             f"  left {count}: for {len(further)} further reasons; --report FILE.json lists all"
         )
-    if plan.passed_over:
-        lines.append(
-            f"  passed over {len(plan.passed_over)}: lines of totals or repeated headings, no rows"
-            f" of the log ({_first(plan.passed_over)})"
-        )
+    for reason, where in _by_reason(plan.passed_over).items():
+        lines.append(f"  passed over {len(where)}: {reason} ({_first(where)})")
     for remark, where in plan.remarks.items():
         lines.append(f"  read {len(where)}: {remark} ({_first(where)})")
     lines += [f"  note: {note}" for note in plan.notes]
@@ -107,6 +102,17 @@ def sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
                 " Ctrl+Shift+F9"
             )
     return lines
+
+
+def _by_reason(cells: Iterable[tuple[str, str]]) -> dict[str, list[str]]:
+    grouped: dict[str, list[str]] = {}
+    for cell, reason in cells:
+        grouped.setdefault(reason, []).append(cell)
+    return grouped
+
+
+def _listed(cells: Iterable[tuple[str, str]]) -> list[dict[str, str]]:
+    return [{"cell": cell, "reason": reason} for cell, reason in cells]
 
 
 def _readers(dependents: Dependents) -> str:

@@ -7,6 +7,7 @@ from dataclasses import dataclass
 from typing import TypedDict, Unpack
 
 from epochconv.history import ExpansionHistory
+from epochconv.peculiar_motion import speed_of
 from epochconv.published import history_of
 
 
@@ -84,12 +85,13 @@ def request_of(**choices: Unpack[Choices]) -> Request:
     """Settle the choices of a fill.
 
     Raises:
-        ArgumentError: no such parameter set.
+        ArgumentError: no such parameter set, or a peculiar velocity that is none.
         TypeError: there is no such choice.
     """
     unknown = set(choices) - set(Choices.__annotations__)
     if unknown:
         raise TypeError(f"no such choice: {', '.join(sorted(unknown))}")
+    velocity = choices.get("peculiar_velocity")
     return Request(
         history=history_of(choices.get("parameters")),
         sheet=choices.get("sheet"),
@@ -104,7 +106,7 @@ def request_of(**choices: Unpack[Choices]) -> Request:
         missing=tuple(choices.get("missing", ())),
         with_errors=choices.get("with_errors", False),
         error_terms=ErrorTerms(
-            choices.get("parameter_error", False), choices.get("peculiar_velocity")
+            choices.get("parameter_error", False), None if velocity is None else speed_of(velocity)
         ),
         allow_protected=choices.get("allow_protected", False),
     )

@@ -48,7 +48,7 @@ class SheetPlan:
         grown: the table that grows and the names of its new columns, or None.
         left: address and reason of each cell that stays unfilled for a reason.
         remarks: what a person should know of cells that were read, with their addresses.
-        passed_over: rows that are no part of the log, such as totals, by address.
+        passed_over: address and reason of each cell in a row that is none of the log.
         notes: sentences for the report, warnings of whole columns among them.
     """
 
@@ -58,8 +58,15 @@ class SheetPlan:
     grown: tuple[Table, list[str]] | None = None
     left: list[tuple[str, str]] = field(default_factory=list)
     remarks: dict[str, list[str]] = field(default_factory=dict)
-    passed_over: list[str] = field(default_factory=list)
+    passed_over: list[tuple[str, str]] = field(default_factory=list)
     notes: list[str] = field(default_factory=list)
+
+    @property
+    def filled(self) -> int:
+        """How many cells below the headings get something."""
+        if self.columns:
+            return sum(one.count for one in self.columns)
+        return sum(len(one.rows) for one in self.cells)
 
     @property
     def changed(self) -> list[Range]:

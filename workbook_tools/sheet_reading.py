@@ -2,16 +2,15 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Mapping, Sequence
-from dataclasses import dataclass
+from collections.abc import Iterable, Iterator, Sequence
 
 import numpy as np
 
 from workbook_tools.cell_address import Range, column_letters
 from workbook_tools.column_meanings import Heading, Meaning, Role
 from workbook_tools.errors import UsageError
-from workbook_tools.header_rows import holds_units, read_headings
-from workbook_tools.headings import lacks_unit, meaning_of
+from workbook_tools.header_block import HeaderBlock, HeaderFinder
+from workbook_tools.header_rows import read_headings
 from workbook_tools.parts import Sheet
 from workbook_tools.sheet_scan import SheetScan, attributes_of
 from workbook_tools.tables import Table
@@ -25,26 +24,8 @@ from workbook_tools.typed_cells import (
 )
 from workbook_tools.written_values import range_in
 
-# A header row stands near the top: above it are titles, contacts, remarks.
-_ROWS_SEARCHED = 200
 # Redshifts are hardly ever that high, and magnitudes hardly ever that low.
 _LIKE_MAGNITUDES = 10.0
-
-
-@dataclass(frozen=True)
-class HeaderBlock:
-    """The rows of headings, by index in the scan.
-
-    Attributes:
-        names: the row of names.
-        last: the row of units below them, or the names again.
-        rows: texts by column of groups, names and units, as far as there are such rows; the text
-            of a merged cell stands in each of its columns.
-    """
-
-    names: int
-    last: int
-    rows: tuple[Mapping[int, str], ...]
 
 
 class SheetReading:
@@ -52,6 +33,7 @@ class SheetReading:
 
     Attributes:
         sheet, scan, tables: what it was read from.
+        merged: the merged cells.
         blocked: rectangles into which nothing may be written: merged cells, array formulas and
             data tables, pivot tables.
         header: the rows of headings, None where none were found.
@@ -78,17 +60,13 @@ class SheetReading:
         self.sheet = sheet
         self.scan = scan
         self.tables = tables
-        self._merged = _merged(scan)
-        self.blocked = [*self._merged, *_arrays(scan), *pivots]
+        self.merged = _merged(scan)
+        self.blocked = [*self.merged, *_arrays(scan), *pivots]
+        self._headers = HeaderFinder(scan, self._row_texts, self.merged)
         self._rules = rules
         self._known: dict[int, ColumnCells] = {}
         self.rows = range(0)
         self._take_header(self._find_header(header_row))
-
-    @property
-    def header_index(self) -> int | None:
-        """Index of the row of names in the scan, None where none was found."""
-        return None if self.header is None else self.header.names
 
     @property
     def header_row(self) -> int | None:
@@ -111,14 +89,12 @@ class SheetReading:
 
     def texts_of(self, column: int) -> dict[int, str]:
         """Return the texts of a column's cells, by position in the rows of the log."""
-        texts = {}
-        for position, index in enumerate(self.rows):
-            for cell in self.scan.cells(index):
-                if cell.column == column and not self.scan.is_empty(cell):
-                    text = shown_text(self.scan, cell, self._rules).text
-                    if text.strip():
-                        texts[position] = text
-        return texts
+        found = self._quick_texts(column) if self.scan.cells_regular else self._all_texts(column)
+        return {position: text for position, text in found if text.strip()}
+
+    def texts_in_row(self, position: int) -> dict[int, str]:
+        """Return the texts in a row of the log, by column."""
+        return self._row_texts(self.rows[position])
 
     def table_of(self, column: int) -> Table | None:
         """Return the table that holds the header row at that column, None where none does."""
@@ -139,21 +115,22 @@ class SheetReading:
             return
         above = [i for i, why in cells.reasons.items() if i < first and why.startswith(NOT_READ)]
         if above:
-            self._take_header(self._block(max(above)))
+            self._take_header(self._headers.at(max(above)))
         else:
             self.rows = range(first, len(self.scan))
 
-    def lacking_units(self) -> list[str]:
-        """Return sentences about headings that name a measure but lack the unit it needs."""
-        sentences = []
-        for column, text in self.texts.items():
-            measure = None if column in self.headings else lacks_unit(text)
-            if measure is not None:
-                sentences.append(
-                    f"heading {text!r} ({column_letters(column)}{self.header_row}) has no unit and"
-                    f" is left alone; write '{text.strip()} [{measure.unit}]'"
-                )
-        return sentences
+    def doubts(self, settled: int | None = None) -> list[str]:
+        """Return sentences about headings that are unclear, and what settles each.
+
+        Args:
+            settled: a column of which somebody has said what it holds.
+        """
+        return [
+            f"heading {' '.join(self.texts.get(column, '').split())!r}"
+            f" ({column_letters(column)}{self.header_row}) is left alone: {meaning.reason}"
+            for column, meaning in sorted(self.meanings.items())
+            if meaning.role is Role.UNCLEAR and column != settled
+        ]
 
     def last_used_column(self, indices: Iterable[int]) -> int:
         """Return the last column that holds something in rows of the scan, 0 for none."""
@@ -166,6 +143,27 @@ class SheetReading:
     def where(self, position: int, column: int) -> str:
         """Return the address of a cell in the log's row at that position."""
         return f"{column_letters(column)}{self.scan.numbers[self.rows[position]]}"
+
+    def _quick_texts(self, column: int) -> Iterator[tuple[int, str]]:
+        """Yield position and text of each cell of a column, for regular cells."""
+        scan, letters = self.scan, column_letters(column).encode()
+        places = {scan.numbers[index]: position for position, index in enumerate(self.rows)}
+        for row, _, _, _, shared in scan.plain_cells(letters):
+            position = places.get(row)
+            if position is None:
+                continue
+            if shared is not None:
+                yield position, self._rules.text_of(shared).text
+                continue
+            cell = scan.find_cell(self.rows[position], letters)
+            if cell is not None and not scan.is_empty(cell):
+                yield position, shown_text(scan, cell, self._rules).text
+
+    def _all_texts(self, column: int) -> Iterator[tuple[int, str]]:
+        for position, index in enumerate(self.rows):
+            for cell in self.scan.cells(index):
+                if cell.column == column and not self.scan.is_empty(cell):
+                    yield position, shown_text(self.scan, cell, self._rules).text
 
     def _last_filled(self, index: int) -> int:
         cells = self.scan.cells(index)
@@ -196,42 +194,8 @@ class SheetReading:
                     f"row {header_row} of sheet {self.sheet.name!r} holds no headings; name the row"
                     " in which they stand with --header-row, and its sheet with --sheet"
                 )
-            return self._block(index)
-        best, most = None, 0
-        for index in range(min(len(self.scan), _ROWS_SEARCHED)):
-            found = sum(_likeness(text) for text in self._row_texts(index).values())
-            if found > most:
-                best, most = index, found
-        return None if best is None else self._block(best)
-
-    def _block(self, names: int) -> HeaderBlock:
-        """Return the header rows around a row of names."""
-        texts = self._row_texts(names)
-        rows: list[Mapping[int, str]] = [texts]
-        last = names
-        numbers = self.scan.numbers
-        if names + 1 < len(self.scan) and numbers[names + 1] == numbers[names] + 1:
-            below = self._row_texts(names + 1)
-            if below and holds_units(below):
-                rows.append(below)
-                last = names + 1
-        if names > 0 and numbers[names - 1] == numbers[names] - 1:
-            above = self._groups(names - 1, texts)
-            if above:
-                rows.insert(0, above)
-        return HeaderBlock(names, last, tuple(rows))
-
-    def _groups(self, index: int, names: Mapping[int, str]) -> dict[int, str]:
-        """Return the texts of a row of groups over their columns; titles are no groups."""
-        row = self.scan.numbers[index]
-        spread: dict[int, str] = {}
-        for column, text in self._row_texts(index).items():
-            area = next((one for one in self._merged if one.contains(row, column)), None)
-            reach = range(column, column + 1) if area is None else _columns(area)
-            upright = area is not None and area.height > 1
-            if upright or 1 < len(reach) < max(len(names), 3):
-                spread.update(dict.fromkeys(reach, text))
-        return spread
+            return self._headers.at(index)
+        return self._headers.find()
 
     def _take_header(self, header: HeaderBlock | None) -> None:
         self.header = header
@@ -241,9 +205,7 @@ class SheetReading:
         self.texts: dict[int, str] = {}
         if header is None:
             return
-        names = self._row_texts(header.names)
-        above = header.rows[0] if header.rows[0] is not names else {}
-        self.texts = {c: t for c, t in above.items() if c not in names} | names
+        self.texts = dict(header.texts)
         self._give_meanings(read_headings(header.rows))
         self._limit_rows()
         magnitudes = [c for c in self.headings if self._looks_like_magnitudes(c)]
@@ -288,17 +250,6 @@ class SheetReading:
         if last is not None:
             stop = next((i for i in range(start, stop) if self.scan.numbers[i] > last), stop)
         self.rows = range(start, stop)
-
-
-def _likeness(text: str) -> int:
-    """Return how much a text speaks for a row of headings."""
-    if meaning_of(text).role is Role.VALUE:
-        return 2
-    return 1 if lacks_unit(text) is not None else 0
-
-
-def _columns(area: Range) -> range:
-    return range(area.first_column, area.last_column + 1)
 
 
 def _merged(scan: SheetScan) -> list[Range]:

@@ -3,14 +3,18 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Sequence
+
+import numpy as np
 
 from workbook_tools.cell_address import column_letters, column_number
-from workbook_tools.column_meanings import Heading
+from workbook_tools.column_meanings import ERRORS, Heading, Role
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import lacks_unit, read_heading, same_heading
 from workbook_tools.request import Request
 from workbook_tools.sheet_reading import SheetReading
-from workbook_tools.typed_cells import NUMBER, ColumnCells
+from workbook_tools.typed_cells import LIMIT, NUMBER, ColumnCells
+from workbook_tools.value_columns import read_values
 
 _LETTERS = re.compile(r"\$?([A-Za-z]{1,3}):\$?([A-Za-z]{1,3})")
 
@@ -31,7 +35,7 @@ def named_source(reading: SheetReading, request: Request) -> tuple[int, Heading]
             raise UsageError(f"--source {request.source} is more than one column; name one, as C:C")
         column = column_number(letters[1])
     else:
-        fitting = [c for c, text in reading.texts.items() if same_heading(text, request.source)]
+        fitting = called(reading, request.source)
         if len(fitting) > 1:
             listed = " and ".join(f"{column_letters(c)}:{column_letters(c)}" for c in fitting)
             raise UsageError(
@@ -52,6 +56,23 @@ def named_source(reading: SheetReading, request: Request) -> tuple[int, Heading]
     return column, heading
 
 
+def called(reading: SheetReading, text: str) -> list[int]:
+    """Return the columns whose heading is a text, or whose name and unit it is: `Age [Gyr]`."""
+    return [
+        column
+        for column, shown in reading.texts.items()
+        if same_heading(shown, text) or is_called(reading.headings.get(column), text)
+    ]
+
+
+def is_called(heading: Heading | None, text: str) -> bool:
+    """Tell whether a heading is called so, be its unit beside its name or in a row below."""
+    return heading is not None and (
+        same_heading(heading.text, text)
+        or same_heading(f"{heading.name} [{heading.unit_text}]", text)
+    )
+
+
 def possible_sources(reading: SheetReading) -> list[int]:
     """Return the recognised columns that hold numbers and do not themselves wait to be filled.
 
@@ -59,7 +80,7 @@ def possible_sources(reading: SheetReading) -> list[int]:
     Two columns of one measure in one unit (redshifts by two methods) never fill each other.
     """
     columns = reading.columns(list(reading.headings))
-    filled = {c.column: _filled_rows(c) for c in columns if c.count(NUMBER)}
+    filled = {c.column: _filled_rows(c) for c in columns if c.count(NUMBER) or c.count(LIMIT)}
     return [
         column
         for column, rows in filled.items()
@@ -68,6 +89,37 @@ def possible_sources(reading: SheetReading) -> list[int]:
             for other, further in filled.items()
         )
     ]
+
+
+def waited_for(reading: SheetReading, sources: Sequence[int], with_errors: bool) -> list[int]:
+    """Return the sources from which error columns and flag columns of others could be filled.
+
+    Args:
+        sources: columns of values, each of which could serve.
+        with_errors: whether error columns are to be appended where there are none.
+    """
+    values = {column: read_values(reading, column, reading.headings[column]) for column in sources}
+    found = set()
+    for owner in reading.headings:
+        companions = {role: reading.companion(owner, role) for role in (*ERRORS, Role.LIMIT_FLAG)}
+        for source, held in values.items():
+            if source == owner or held.heading.same_kind(reading.headings[owner]):
+                continue
+            for role, column in companions.items():
+                if column is None:
+                    continue
+                (cells,) = reading.columns([column])
+                errors = ~np.isnan(held.lower)
+                wanted = (
+                    list(held.limits)
+                    if role is Role.LIMIT_FLAG
+                    else np.flatnonzero(errors).tolist()
+                )
+                if any(cells.is_blank(position) for position in wanted):
+                    found.add(source)
+            if with_errors and held.has_errors and not any(companions[role] for role in ERRORS):
+                found.add(source)
+    return sorted(found)
 
 
 def refuse_several(reading: SheetReading, sources: list[int]) -> None:

@@ -36,8 +36,8 @@ def _about_redshifts(moments: Moments) -> list[str]:
     if near:
         share = _MOTION_KM_PER_S / _C_KM_PER_S / float(known[known > 0.0].min())
         sentences.append(
-            f"{near} of the redshifts are below {_NEAR:g}, where peculiar motion counts: 300 km/s"
-            f" are {100.0 * share:.0f} % of the smallest"
+            f"{_redshifts(near)} below {_NEAR:g}, where peculiar motion counts: 300 km/s are"
+            f" {100.0 * share:.0f} % of the smallest"
         )
     moved = int(np.count_nonzero(known < _FRAME_MATTERS))
     if heading.measure.name == "redshift":
@@ -55,12 +55,12 @@ def _about_redshifts(moments: Moments) -> list[str]:
             sentences.append("the redshifts are photometric; their errors may have two peaks")
     far = int(np.count_nonzero((known > _FAR) & (known <= _ANNIHILATION)))
     if far:
-        sentences.append(f"{far} of the redshifts are above {_FAR:g}, where no object is known")
+        sentences.append(f"{_redshifts(far)} above {_FAR:g}, where no object is known")
     beyond = int(np.count_nonzero(known > _ANNIHILATION))
     if beyond:
         sentences.append(
-            f"{beyond} of the redshifts are above {_ANNIHILATION:g}, where electron-positron"
-            " annihilation makes the model itself untrue"
+            f"{_redshifts(beyond)} above {_ANNIHILATION:g}, where electron-positron annihilation"
+            " makes the model itself untrue"
         )
     if heading.h_power:
         sentences.append(
@@ -68,6 +68,10 @@ def _about_redshifts(moments: Moments) -> list[str]:
             f" h = {moments.history.hubble_constant / 100.0:.6g}"
         )
     return sentences
+
+
+def _redshifts(count: int) -> str:
+    return "1 redshift is" if count == 1 else f"{count} redshifts are"
 
 
 def _about_parameters(moments: Moments, filled: Iterable[Heading]) -> list[str]:

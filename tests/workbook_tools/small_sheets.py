@@ -3,18 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from typing import Any
 
 from epochconv.published import history_of
 from tests.workbook_tools.loose_parts import MAIN
 from workbook_tools.cell_address import Range
 from workbook_tools.parts import Sheet, SheetKind, SheetState
 from workbook_tools.request import Request
-from workbook_tools.sheet_reading import Context, SheetReading
+from workbook_tools.shared_strings import TypedText
+from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.tables import Table
+from workbook_tools.typed_cells import CellRules
 
 PART = "xl/worksheets/sheet1.xml"
-DATE_STYLE = 9
+DATE_STYLE, PERCENT_STYLE, STRUCK_STYLE = 9, 8, 7
 Value = float | str | None
 
 
@@ -62,13 +65,24 @@ def reading_of(
     tables: Sequence[Table] = (),
     pivots: Sequence[Range] = (),
     header_row: int | None = None,
-    texts: Sequence[str] = (),
+    texts: Sequence[str | TypedText] = (),
+    **how: Any,
 ) -> SheetReading:
-    """Read a sheet named Log; style 9 is one of dates, `texts` are the shared strings."""
+    """Read a sheet named Log; `texts` are the shared strings, `how` is how cells are read."""
     scan = rows if isinstance(rows, SheetScan) else scan_of(rows)
     sheet = Sheet("Log", 1, SheetState.VISIBLE, SheetKind.WORKSHEET, PART)
-    context = Context(lambda number: texts[number], lambda style: style == DATE_STYLE)
-    return SheetReading(sheet, scan, tables, pivots, context, header_row)
+    return SheetReading(sheet, scan, tables, pivots, rules(texts, **how), header_row)
+
+
+def rules(texts: Sequence[str | TypedText] = (), **how: Any) -> CellRules:
+    """How cells are read: style 9 is one of dates, 8 of percents, 7 strikes its cells through."""
+    return CellRules(
+        lambda number: TypedText(texts[number]) if isinstance(texts[number], str) else texts[number],
+        lambda style: style == DATE_STYLE,
+        lambda style: style == PERCENT_STYLE,
+        lambda style: style == STRUCK_STYLE,
+        **how,
+    )
 
 
 def table_at(ref: Range, *columns: str, growable: bool = True, totals: int = 0) -> Table:
@@ -77,6 +91,6 @@ def table_at(ref: Range, *columns: str, growable: bool = True, totals: int = 0) 
     return Table("xl/tables/t.xml", "Objects", 1, ref, 1, totals, columns, growable, reason)
 
 
-def request(**choices: object) -> Request:
+def request(**choices: Any) -> Request:
     """A request under the default parameters."""
-    return Request(history=history_of(None), **choices)  # type: ignore[arg-type]  # per test
+    return Request(history=history_of(None), **choices)
