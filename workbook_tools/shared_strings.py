@@ -36,12 +36,14 @@ class TypedText(NamedTuple):
         rich: whether it is made of runs, each of which may have a look of its own.
         shifted: whether a run is raised or lowered, as the 2 of km².
         struck: whether a run is struck through.
+        partly_struck: whether some of its digits are struck through and others are not.
     """
 
     text: str
     rich: bool = False
     shifted: bool = False
     struck: bool = False
+    partly_struck: bool = False
 
 
 class SharedStrings:
@@ -102,7 +104,8 @@ def read_text(xml: bytes) -> TypedText:
     parser.EndElementHandler = runs.close
     parser.CharacterDataHandler = runs.characters
     parser.Parse(xml, True)
-    return TypedText("".join(runs.texts), runs.rich, runs.shifted, runs.struck)
+    partly = len(runs.digits_struck) > 1
+    return TypedText("".join(runs.texts), runs.rich, runs.shifted, runs.struck, partly)
 
 
 class _Runs:
@@ -113,21 +116,29 @@ class _Runs:
         self.pieces: list[str] = []
         self.path: list[str] = []
         self.rich = self.shifted = self.struck = False
+        self.run_struck = False
+        # Whether the runs that hold digits are struck through.
+        self.digits_struck: set[bool] = set()
 
     def open(self, name: str, attributes: dict[str, str]) -> None:
         local = name.rpartition(":")[2]
         value = attributes.get("val", "1")
         self.path.append(local)
         self.pieces.clear()
-        self.rich |= local == "r"
+        if local == "r":
+            self.rich, self.run_struck = True, False
         if "rPr" in self.path:
             self.shifted |= local == "vertAlign" and value in ("superscript", "subscript")
-            self.struck |= local == "strike" and value in ("1", "true", "on")
+            self.run_struck |= local == "strike" and value in ("1", "true", "on")
+            self.struck |= self.run_struck
 
     def close(self, _name: str) -> None:
         # `rPh` holds how the text is pronounced, which is no part of it
         if self.path.pop() == "t" and "rPh" not in self.path:
-            self.texts.append(decoded("".join(self.pieces)))
+            text = decoded("".join(self.pieces))
+            self.texts.append(text)
+            if any(letter.isdigit() for letter in text):
+                self.digits_struck.add(self.run_struck)
 
     def characters(self, data: str) -> None:
         self.pieces.append(data)

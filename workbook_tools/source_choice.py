@@ -12,6 +12,7 @@ from workbook_tools.column_meanings import ERRORS, Heading, Role
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import lacks_unit, read_heading, same_heading
 from workbook_tools.request import Request
+from workbook_tools.rows_passed_over import rows_passed_over
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.typed_cells import LIMIT, NUMBER, ColumnCells
 from workbook_tools.value_columns import read_values
@@ -80,7 +81,11 @@ def possible_sources(reading: SheetReading) -> list[int]:
     Two columns of one measure in one unit (redshifts by two methods) never fill each other.
     """
     columns = reading.columns(list(reading.headings))
-    filled = {c.column: _filled_rows(c) for c in columns if c.count(NUMBER) or c.count(LIMIT)}
+    filled = {
+        cells.column: _filled_rows(reading, cells)
+        for cells in columns
+        if cells.count(NUMBER) or cells.count(LIMIT)
+    }
     return [
         column
         for column, rows in filled.items()
@@ -154,5 +159,8 @@ def known_heading(text: str, option: str) -> Heading:
     return heading
 
 
-def _filled_rows(cells: ColumnCells) -> frozenset[int]:
-    return frozenset(p for p, kind in enumerate(cells.kinds) if kind >= NUMBER)
+def _filled_rows(reading: SheetReading, cells: ColumnCells) -> frozenset[int]:
+    """Return the rows in which a column has something, without those that are none of the log."""
+    passed_over = rows_passed_over(reading, cells, reading.headings[cells.column])
+    held = (p for p, kind in enumerate(cells.kinds) if kind >= NUMBER)
+    return frozenset(p for p in held if p not in passed_over)

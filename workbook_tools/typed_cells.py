@@ -39,6 +39,7 @@ NOT_READ = "not read: "
 
 SUMS_UP = "a formula over other cells, not a row of the log"
 _DATE = "a date that a spreadsheet program made of something else, which is lost; type it again"
+_PARTLY_STRUCK = "struck through in part; keep one value"
 _RAISED = "raised or lowered digits, which could be an exponent or a footnote; retype it"
 
 STRUCK = "struck through"
@@ -249,6 +250,8 @@ class _ColumnReader:
             cells.kinds[position] = WHITE
         elif typed.shifted and any(letter.isdigit() for letter in typed.text):
             self._leave(position, _RAISED)
+        elif typed.partly_struck:
+            self._leave(position, _PARTLY_STRUCK)
         else:
             self._take_value(position, typed.text, True)
             struck = typed.struck or self.rules.is_struck(style)

@@ -35,6 +35,7 @@ _SUSPECTS = (
 # Days since 1900 of the years 1998 to 2031, which a date shows when its format is taken away.
 _DAYS = (36_000.0, 48_000.0)
 
+_LIMIT = "a limit"
 _UNIT_DIFFERS = "a unit in the cell that differs from the heading's, converted"
 _ZERO = "a redshift of exactly 0, which may stand for a missing value"
 _DAY = "a whole number that may be a date without its format"
@@ -117,6 +118,7 @@ def read_values(reading: SheetReading, column: int, heading: Heading) -> ValueCo
     _take_units(found)
     _take_flags(found, reading)
     _take_error_columns(found, reading)
+    found.remark(_LIMIT, sorted(found.limits))
     for position in found.limits:
         found.lower[position] = found.upper[position] = np.nan
     found.lower[np.isnan(found.values)] = found.upper[np.isnan(found.values)] = np.nan

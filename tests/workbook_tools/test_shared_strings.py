@@ -75,7 +75,11 @@ def run(look: str, text: str) -> str:
         ("<si>" + run("<strike val='0'/>", "6.3") + "</si>", TypedText("6.3", True)),
         (
             "<x:si><x:r><x:rPr><x:strike/></x:rPr><x:t>6</x:t></x:r><x:r><x:t>.3</x:t></x:r></x:si>",
-            TypedText("6.3", True, struck=True),
+            TypedText("6.3", True, struck=True, partly_struck=True),
+        ),
+        (
+            "<si>" + run("<strike/>", "6.3") + "<r><t>, sky</t></r></si>",
+            TypedText("6.3, sky", True, struck=True),
         ),
         (
             "<si><r><t>東</t></r><rPh sb='0' eb='1'><t>ひがし</t></rPh><r><t>京</t></r></si>",

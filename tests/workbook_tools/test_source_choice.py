@@ -41,6 +41,12 @@ def test_columns_that_could_serve(rows: list[list[Value]], expected: list[int]) 
     assert sources(HEADER, *rows) == expected
 
 
+def test_headings_repeated_among_the_rows_count_for_neither_column() -> None:
+    rows = [[1.0, 5.8], list(HEADER), [None, "Gyr"], [2.0]]
+    assert sources(HEADER, [None, "Gyr"], *rows) == [1]
+    assert sources(("z", "Age"), (None, "Gyr"), *rows) == [1]
+
+
 def test_two_candidates_are_listed() -> None:
     reading = reading_of(grid(HEADER, [1.0, 5.8]))
     with pytest.raises(UsageError) as caught:
