@@ -19,9 +19,9 @@ from workbook_tools.column_meanings import ERRORS, Heading, Role
 from workbook_tools.errors import Refusal
 from workbook_tools.number_formats import significant_digits
 from workbook_tools.sheet_edits import NewCells
-from workbook_tools.sheet_plan import FilledColumn, SheetPlan
+from workbook_tools.sheet_plan import FilledColumn, NamedCell, SheetPlan
 from workbook_tools.styles import StyleSheet
-from workbook_tools.typed_cells import EMPTY, LEFT, NOT_READ, NUMBER, WHITE, WORD, ColumnCells
+from workbook_tools.typed_cells import EMPTY, LEFT, NUMBER, WHITE, WORD, ColumnCells
 
 BoolArray = NDArray[np.bool_]
 
@@ -136,13 +136,17 @@ class ColumnFiller:
         source, column = self.source, self.source.cells.column
         where = self._where(column)
         passed = [(p, why) for p, why in source.passed_over.items() if self.wanted[p]]
-        self.plan.passed_over += [(where(p), why) for p, why in sorted(passed)]
+        self.plan.passed_over += [NamedCell(where(p), why) for p, why in sorted(passed)]
         for position in sorted(set(source.reasons) | set(self.moments.reasons)):
             if self.wanted[position]:
                 reason = source.reasons.get(position) or self.moments.reasons[position]
-                self.plan.left.append((where(position), reason))
+                shown = source.cells.shown.get(position, "")
+                if position not in source.reasons:
+                    shown = f"{source.cells.numbers[position]:.6g}"
+                self.plan.left.append(NamedCell(where(position), reason, shown))
         for remark, positions in source.remarks.items():
-            asked = [where(p) for p in positions if self.wanted[p]]
+            read = (p for p in positions if p not in self.moments.reasons)
+            asked = [where(p) for p in read if self.wanted[p]]
             if asked:
                 self.plan.remarks.setdefault(remark, []).extend(asked)
         words = Counter(
@@ -286,13 +290,13 @@ class ColumnFiller:
         kinds = np.frombuffer(target.kinds, dtype=np.uint8)
         held = (kinds == WHITE) | (kinds == WORD) | (kinds == LEFT)
         for position in np.flatnonzero(held & ~np.isnan(self.moments.moment.x)).tolist():
-            shown = target.shown.get(position) or target.reasons.get(position, "white space")
+            shown = target.shown.get(position, "")
             address = self._where(target.column)(position)
-            self.plan.left.append((address, f"not overwritten: {shown.removeprefix(NOT_READ)}"))
+            self.plan.left.append(NamedCell(address, "not overwritten", shown or "white space"))
 
     def _leave(self, reasons: dict[int, str], blank: BoolArray, column: int) -> None:
         where = self._where(column)
-        self.plan.left += [(where(p), reason) for p, reason in reasons.items() if blank[p]]
+        self.plan.left += [NamedCell(where(p), reason) for p, reason in reasons.items() if blank[p]]
 
     def _where(self, column: int) -> Callable[[int], str]:
         return lambda position: self.reading.where(position, column)

@@ -55,7 +55,7 @@ class FillResult:
     @property
     def left(self) -> list[tuple[str, str, str]]:
         """Sheet, cell and reason of each cell that stays unfilled for a reason."""
-        return [(p.reading.sheet.name, cell, why) for p in self.plans for cell, why in p.left]
+        return [(p.reading.sheet.name, one.cell, one.reason) for p in self.plans for one in p.left]
 
     @property
     def counts(self) -> dict[str, int]:

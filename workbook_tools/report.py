@@ -9,7 +9,7 @@ from epochconv.published import label_of, parameter_sets
 from workbook_tools.cell_address import column_letters
 from workbook_tools.dependents import Dependents
 from workbook_tools.filling import FillResult
-from workbook_tools.sheet_plan import FilledColumn, SheetPlan
+from workbook_tools.sheet_plan import FilledColumn, NamedCell, SheetPlan
 
 _FIRST_CELLS = 3
 _FIRST_REASONS = 12
@@ -104,15 +104,15 @@ def sheet_lines(plan: SheetPlan, dependents: Dependents | None) -> list[str]:
     return lines
 
 
-def _by_reason(cells: Iterable[tuple[str, str]]) -> dict[str, list[str]]:
+def _by_reason(cells: Iterable[NamedCell]) -> dict[str, list[str]]:
     grouped: dict[str, list[str]] = {}
-    for cell, reason in cells:
-        grouped.setdefault(reason, []).append(cell)
+    for cell, reason, text in cells:
+        grouped.setdefault(reason, []).append(f"{cell} '{text}'" if text else cell)
     return grouped
 
 
-def _listed(cells: Iterable[tuple[str, str]]) -> list[dict[str, str]]:
-    return [{"cell": cell, "reason": reason} for cell, reason in cells]
+def _listed(cells: Iterable[NamedCell]) -> list[dict[str, str | None]]:
+    return [{"cell": cell, "reason": reason, "text": text or None} for cell, reason, text in cells]
 
 
 def _readers(dependents: Dependents) -> str:

@@ -3,12 +3,27 @@
 from __future__ import annotations
 
 from dataclasses import dataclass, field
+from typing import NamedTuple
 
 from workbook_tools.cell_address import Range
 from workbook_tools.column_meanings import Heading
 from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.tables import Table
+
+
+class NamedCell(NamedTuple):
+    """A cell that is named in the report.
+
+    Attributes:
+        cell: its address.
+        reason: why; the same words for the same cause.
+        text: what it shows, where that helps; "" otherwise.
+    """
+
+    cell: str
+    reason: str
+    text: str = ""
 
 
 @dataclass(frozen=True)
@@ -46,9 +61,9 @@ class SheetPlan:
         columns: the columns that get values.
         cells: the new cells.
         grown: the table that grows and the names of its new columns, or None.
-        left: address and reason of each cell that stays unfilled for a reason.
+        left: the cells that stay unfilled for a reason.
         remarks: what a person should know of cells that were read, with their addresses.
-        passed_over: address and reason of each cell in a row that is none of the log.
+        passed_over: the cells in rows that are none of the log.
         notes: sentences for the report, warnings of whole columns among them.
     """
 
@@ -56,9 +71,9 @@ class SheetPlan:
     columns: list[FilledColumn] = field(default_factory=list)
     cells: list[NewCells] = field(default_factory=list)
     grown: tuple[Table, list[str]] | None = None
-    left: list[tuple[str, str]] = field(default_factory=list)
+    left: list[NamedCell] = field(default_factory=list)
     remarks: dict[str, list[str]] = field(default_factory=dict)
-    passed_over: list[tuple[str, str]] = field(default_factory=list)
+    passed_over: list[NamedCell] = field(default_factory=list)
     notes: list[str] = field(default_factory=list)
 
     @property

@@ -15,7 +15,6 @@ from workbook_tools.parts import Sheet
 from workbook_tools.sheet_scan import SheetScan, attributes_of
 from workbook_tools.tables import Table
 from workbook_tools.typed_cells import (
-    NOT_READ,
     NUMBER,
     CellRules,
     ColumnCells,
@@ -113,7 +112,7 @@ class SheetReading:
         first = next((i for i in everything if cells.kinds[i] == NUMBER), None)
         if first is None:
             return
-        above = [i for i, why in cells.reasons.items() if i < first and why.startswith(NOT_READ)]
+        above = [i for i in cells.shown if i < first and column in self._row_texts(i)]
         if above:
             self._take_header(self._headers.at(max(above)))
         else:

@@ -34,9 +34,6 @@ _RANGE = re.compile(r"\$?[A-Z]{1,3}\$?([0-9]{1,7}):\$?[A-Z]{1,3}\$?([0-9]{1,7})"
 _MOVING_ROW = re.compile(r"(?<![\w.$])\$?[A-Z]{1,3}([0-9]{1,7})(?![\w.(\[])", re.IGNORECASE)
 _THIS_ROW = re.compile(r"\[\[?#This Row\]", re.IGNORECASE)
 
-NOT_READ = "not read: "
-"""What precedes a text in the reason why it is left."""
-
 SUMS_UP = "a formula over other cells, not a row of the log"
 _DATE = "a date that a spreadsheet program made of something else, which is lost; type it again"
 _PARTLY_STRUCK = "struck through in part; keep one value"
@@ -83,9 +80,9 @@ class ColumnCells:
         errors: lower and upper error typed with a value, by position.
         limits: the sign of each LIMIT, by position.
         units: the unit typed with a value, by position.
-        reasons: why a LEFT cell is left, by position.
+        reasons: why a LEFT cell is left, by position; the same words for the same cause.
         remarks: what a person should know of cells that were read, with their positions.
-        shown: the text of each WORD cell, and of each LEFT one that has a text, by position.
+        shown: what a WORD or LEFT cell shows, where that is more than a date or nothing.
     """
 
     column: int
@@ -230,7 +227,7 @@ class _ColumnReader:
             return
         reason = self._reason(cell, formula, typed)
         if reason:
-            self._leave(position, reason)
+            self._leave(position, reason, "" if reason == _DATE else typed.text)
             return
         self._take_value(position, typed.text, is_text)
         if cells.kinds[position] not in (NUMBER, LIMIT):
@@ -249,9 +246,9 @@ class _ColumnReader:
         if not typed.text.strip():
             cells.kinds[position] = WHITE
         elif typed.shifted and any(letter.isdigit() for letter in typed.text):
-            self._leave(position, _RAISED)
+            self._leave(position, _RAISED, typed.text)
         elif typed.partly_struck:
-            self._leave(position, _PARTLY_STRUCK)
+            self._leave(position, _PARTLY_STRUCK, typed.text)
         else:
             self._take_value(position, typed.text, True)
             struck = typed.struck or self.rules.is_struck(style)
@@ -266,18 +263,15 @@ class _ColumnReader:
             brackets_are_notes=self.rules.brackets_are_notes,
             names=self.names,
         )
-        if not isinstance(found, Typed):
-            cells.shown[position] = _shortened(text)
-        if isinstance(found, NoValue):
-            if found.listed:
-                self._leave(position, f"no value yet: {_shortened(text)}")
-            else:
-                cells.kinds[position] = WORD
-        elif not isinstance(found, Typed):
-            self._leave(position, f"{NOT_READ}{_shortened(text)} ({found.reason})")
-        elif found.value in self.rules.missing and not found.limit:
+        if isinstance(found, NoValue) and found.listed:
+            self._leave(position, "no value yet", text)
+        elif isinstance(found, NoValue) or (
+            isinstance(found, Typed) and found.value in self.rules.missing and not found.limit
+        ):
             cells.kinds[position] = WORD
             cells.shown[position] = _shortened(text)
+        elif not isinstance(found, Typed):
+            self._leave(position, f"not read: {found.reason}", text)
         else:
             cells.kinds[position] = LIMIT if found.limit else NUMBER
             cells.numbers[position] = found.value
@@ -299,16 +293,18 @@ class _ColumnReader:
         if not typed.text.strip():
             return "a formula without a stored result; recalculate and save the workbook first"
         if cell.type == "b":
-            return NOT_READ + typed.text
+            return "not read: true or false and no number"
         if cell.type == "e":
-            return f"a formula error: {typed.text}"
+            return "a formula error"
         if cell.type == "d" or (cell.type == "n" and self.rules.is_date(cell.style)):
             return _DATE
         return ""
 
-    def _leave(self, position: int, reason: str) -> None:
+    def _leave(self, position: int, reason: str, text: str) -> None:
         self.cells.kinds[position] = LEFT
         self.cells.reasons[position] = reason
+        if text.strip():
+            self.cells.shown[position] = _shortened(text)
 
     def _is_special(self, style: int) -> bool:
         known = self.special.get(style)

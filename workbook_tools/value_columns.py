@@ -118,7 +118,8 @@ def read_values(reading: SheetReading, column: int, heading: Heading) -> ValueCo
     _take_units(found)
     _take_flags(found, reading)
     _take_error_columns(found, reading)
-    found.remark(_LIMIT, sorted(found.limits))
+    found.limits = dict(sorted(found.limits.items()))
+    found.remark(_LIMIT, list(found.limits))
     for position in found.limits:
         found.lower[position] = found.upper[position] = np.nan
     found.lower[np.isnan(found.values)] = found.upper[np.isnan(found.values)] = np.nan
