@@ -4,6 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from typing import Any
+from xml.sax.saxutils import escape
 
 from epochconv.published import history_of
 from tests.workbook_tools.loose_parts import MAIN
@@ -50,7 +51,7 @@ def cell(address: str, value: Value, style: int = 0) -> str:
     if value is None:
         return f"<c {attributes}/>"
     if isinstance(value, str):
-        return f'<c {attributes} t="inlineStr"><is><t>{value}</t></is></c>'
+        return f'<c {attributes} t="inlineStr"><is><t>{escape(value)}</t></is></c>'
     return f"<c {attributes}><v>{value!r}</v></c>"
 
 
@@ -77,7 +78,9 @@ def reading_of(
 def rules(texts: Sequence[str | TypedText] = (), **how: Any) -> CellRules:
     """How cells are read: style 9 is one of dates, 8 of percents, 7 strikes its cells through."""
     return CellRules(
-        lambda number: TypedText(texts[number]) if isinstance(texts[number], str) else texts[number],
+        lambda number: (
+            TypedText(texts[number]) if isinstance(texts[number], str) else texts[number]
+        ),
         lambda style: style == DATE_STYLE,
         lambda style: style == PERCENT_STYLE,
         lambda style: style == STRUCK_STYLE,

@@ -6,6 +6,9 @@ must agree, and the reasons must read well.
 
 from __future__ import annotations
 
+from array import array
+from typing import Any
+
 import numpy as np
 import pytest
 
@@ -14,17 +17,39 @@ from epochconv.published import history_of
 from epochconv.registry import measure_named
 from epochconv.units import unit_named
 from workbook_tools.answers import FloatArray, Moments
+from workbook_tools.column_meanings import Heading
+from workbook_tools.typed_cells import NUMBER, ColumnCells
+from workbook_tools.value_columns import ValueColumn
 
 DEFAULT = history_of(None)
 NAN = float("nan")
 
 
+def heading(measure: str, unit: str = "", h_power: int = 0) -> Heading:
+    return Heading(measure_named(measure), unit_named(unit), measure, h_power, name=measure)
+
+
+def source(numbers: list[float], measure: str, unit: str = "", **more: Any) -> ValueColumn:
+    """A column B of values; `more` are errors (lower, upper), limits and the like."""
+    count = len(numbers)
+    cells = ColumnCells(
+        2, range(count), bytearray([NUMBER] * count), array("d", numbers), array("q", [0] * count)
+    )
+    nothing = [NAN] * count
+    lower, upper = (np.array(more.pop(side, nothing), float) for side in ("lower", "upper"))
+    limits = more.pop("limits", {})
+    return ValueColumn(
+        heading(measure, unit), cells, np.array(numbers), lower, upper, limits, {}, {}
+    )
+
+
 def moments(numbers: list[float], measure: str, unit: str = "", side: str | None = None) -> Moments:
-    return Moments(np.array(numbers), measure_named(measure), unit_named(unit), DEFAULT, side)
+    return Moments(source(numbers, measure, unit), DEFAULT, side)
 
 
 def column(found: Moments, measure: str, unit: str = "") -> tuple[FloatArray, dict[int, str]]:
-    return found.column(measure_named(measure), unit_named(unit))
+    answers = found.answers(heading(measure, unit))
+    return answers.values, answers.reasons
 
 
 @pytest.mark.parametrize(

@@ -100,7 +100,7 @@ def test_a_heading_looks_like_the_last_one_before_it() -> None:
     )
     reading = reading_of(rows + row(2, 1.0))
     looks = CellLooks(reading, StyleSheet(STYLES, "styles.xml"), reading.columns([1])[0])
-    assert [looks.of_heading(column) for column in (2, 3, 4)] == [1, 1, 5]
+    assert [looks.of_heading(0, column) for column in (2, 3, 4)] == [1, 1, 5]
     assert [looks.wraps(style) for style in (1, 5)] == [False, True]
 
 

@@ -85,6 +85,7 @@ def test_one_that_disagrees_stops_everything_and_names_the_set_that_fits(path: P
     assert filled(path, parameters="round numbers")[1].keys() == {"B4", "C2", "C3", "C4"}
 
 
+NEGATIVE = "a negative redshift is a neighbour's peculiar motion towards us and no epoch"
 _EMPTY_RESULT = '<c r="A3" t="str"><f>IF(1,"",2)</f><v></v>'
 KINDS: Grid = [
     ["Object", "z", "Age [Gyr]"],
@@ -107,20 +108,30 @@ KINDS: Grid = [
 
 def test_every_row_ends_as_filled_or_named(path: Path) -> None:
     result, new = filled(write_log(path, KINDS))
+    assert new.pop("C6") == "<0.927"  # the age at redshift 6 is 0.9272 Gyr
     assert new == pytest.approx({"C2": AGES[1.0], "C3": AGES[2.0], "C4": AGES[3.0]}, rel=1e-5)
-    assert [(sheet, cell) for sheet, cell, _ in result.left] == [
-        ("Log", cell) for cell in ("C13", "B6", "B7", "B8", "B9", "B10", "B11")
+    (plan,) = result.plans
+    assert plan.left == [
+        ("C13", "not overwritten", "n/a"),
+        ("B7", "no value yet", "tbc"),
+        ("B8", NEGATIVE, "-0.0003"),
+        (
+            "B9",
+            "a date that a spreadsheet program made of something else, which is lost; type it"
+            " again",
+            "",
+        ),
+        ("B10", "not read: true or false and no number", "TRUE"),
+        ("B11", "a formula error", "#DIV/0!"),
     ]
-    assert result.counts == {
-        "not overwritten: n/a": 1,
-        "not read: >6": 1,
-        "not read: tbc": 1,
-        "a negative redshift is a neighbour's peculiar motion towards us and no epoch": 1,
-        "a date, not a number; what was typed is lost": 1,
-        "not read: TRUE": 1,
-        "a formula error: #DIV/0!": 1,
+    assert result.left == [("Log", one.cell, one.reason) for one in plan.left]
+    assert result.counts == dict.fromkeys((one.reason for one in plan.left), 1)
+    assert plan.passed_over == [("B15", "a line of totals", "")]
+    assert plan.remarks == {
+        "numbers typed as text": ["B3"],
+        "results of formulas, as last stored": ["B4"],
+        "a limit": ["B6"],
     }
-    assert result.plans[0].passed_over == ["B15"]
 
 
 def test_a_formula_without_a_stored_result_is_left(path: Path) -> None:
@@ -144,7 +155,7 @@ def test_a_second_run_writes_nothing(path: Path) -> None:
     before, stamp = path.read_bytes(), path.stat().st_mtime_ns
     result = fill(path)
     assert (result.written, result.kept, result.filled) == (False, None, 0)
-    assert len(result.left) == 7
+    assert len(result.left) == 6
     assert (path.read_bytes(), path.stat().st_mtime_ns) == (before, stamp)
     assert len(dated_copies(path)) == 1
 
@@ -285,7 +296,7 @@ def test_a_workbook_with_nothing_to_fill_stays_as_it_is(path: Path, rows: Grid) 
 def test_measures_without_a_unit_are_mentioned(path: Path) -> None:
     result, _ = filled(write_log(path, [["z", "Age", "a []"], [1.0]]))
     assert result.warnings == [
-        "heading 'Age' (B1) has no unit and is left alone; write 'Age [Gyr]'"
+        "heading 'Age' (B1) is left alone: age without a unit; write 'Age [Gyr]'"
     ]
 
 

@@ -23,7 +23,7 @@ from tests.workbook_tools.small_logs import (
     write_log,
 )
 from tests.workbook_tools.untouched import compare
-from workbook_tools import Refusal, UsageError, fill, filling
+from workbook_tools import Refusal, UsageError, fill, filling, plan_of_workbook
 from workbook_tools.plan import SheetPlan
 
 
@@ -100,8 +100,8 @@ def test_a_workbook_that_changes_meanwhile_is_left_alone(
         path.write_bytes(path.read_bytes() + b"typed meanwhile")
         return plan_sheet(*arguments)  # type: ignore[arg-type]  # passed on
 
-    plan_sheet = filling.plan_sheet
-    monkeypatch.setattr(filling, "plan_sheet", slowly)
+    plan_sheet = plan_of_workbook.plan_sheet
+    monkeypatch.setattr(plan_of_workbook, "plan_sheet", slowly)
     with pytest.raises(Refusal, match=r"log\.xlsx was changed while it was being filled; nothing"):
         fill(path, output=None if output is None else path.with_name(output))
     assert path.read_bytes().endswith(b"typed meanwhile")

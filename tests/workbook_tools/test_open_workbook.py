@@ -10,6 +10,7 @@ from xlsxwriter.worksheet import Worksheet
 
 from tests.workbook_tools.made_workbooks import make
 from tests.workbook_tools.small_logs import SHEET, WORKBOOK, with_parts, write_log
+from tests.workbook_tools.small_sheets import request
 from workbook_tools.errors import Refusal, UsageError
 from workbook_tools.open_workbook import OpenWorkbook
 
@@ -51,18 +52,21 @@ def test_a_sheet_without_cells_is_refused(log: OpenWorkbook) -> None:
 
 def test_texts_dates_and_tables_are_those_of_the_workbook(tmp_path: Path) -> None:
     workbook = OpenWorkbook(make("tables.xlsx", tmp_path))
-    reading = workbook.reading(workbook.sheets("Log")[0], None)
+    reading = workbook.reading(workbook.sheets("Log")[0], request())
     assert reading.texts[1] == "Object"
     assert [table.name for table in reading.tables] == ["Log"]
     merged = OpenWorkbook(make("merged 1904.xlsx", tmp_path))
-    night = merged.reading(merged.sheets(None)[0], None)
+    night = merged.reading(merged.sheets(None)[0], request())
     (days,) = night.columns([5])
-    assert days.reasons[0] == "a date, not a number; what was typed is lost"
+    assert (
+        days.reasons[0]
+        == "a date that a spreadsheet program made of something else, which is lost; type it again"
+    )
 
 
 def test_where_a_workbook_has_no_styles_nothing_is_a_date(tmp_path: Path) -> None:
     workbook = OpenWorkbook(make("without styles.xlsx", tmp_path))
-    reading = workbook.reading(workbook.sheets(None)[0], None)
+    reading = workbook.reading(workbook.sheets(None)[0], request())
     (redshifts,) = reading.columns([2])
     assert not redshifts.reasons
 
@@ -72,7 +76,7 @@ def test_a_text_without_a_list_of_texts_is_refused(tmp_path: Path) -> None:
     with_parts(path, sheet=('<c r="A1">', '<c r="A1" t="s">'))
     workbook = OpenWorkbook(path)
     with pytest.raises(Refusal, match=r"log\.xlsx: a cell shows text number 1, but the workbook"):
-        workbook.reading(workbook.sheets(None)[0], None)
+        workbook.reading(workbook.sheets(None)[0], request())
 
 
 def test_a_part_that_is_held_is_not_read_again(log: OpenWorkbook) -> None:
@@ -91,5 +95,5 @@ def test_protection_counts_where_it_is_switched_on(
     path = write_log(tmp_path / "log.xlsx", dress=lambda book, sheet: sheet.protect())
     with_parts(path, sheet=('sheet="1"', f'sheet="{flag}"'))
     workbook = OpenWorkbook(path)
-    reading = workbook.reading(workbook.sheets(None)[0], None)
+    reading = workbook.reading(workbook.sheets(None)[0], request())
     assert workbook.is_protected(reading) == protected

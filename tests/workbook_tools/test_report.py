@@ -45,14 +45,17 @@ def test_the_text_says_what_was_done_and_what_was_left(result: FillResult) -> No
     lines = text_report(result).splitlines()
     assert lines[:-3] == [
         "sheet 'Log'",
-        "  C 'Age [Gyr]': 3 cells filled from B 'z'",
-        "  D 'µ [mag]': 2 cells filled from B 'z'",
+        "  C 'Age [Gyr]': 4 cells filled from B 'z', 1 of them a limit",
+        "  D 'µ [mag]': 3 cells filled from B 'z', 1 of them a limit",
         "  left 4: a negative redshift is a neighbour's peculiar motion towards us and no epoch"
-        " (B4, B5, B6 and 1 more)",
+        " (B4 '-0.1', B5 '-0.2', B6 '-0.3' and 1 more)",
         "  left 1: distance modulus does not exist at redshift 0 (D8)",
-        "  left 1: not read: >6 (B3)",
-        "  passed over 1: formulas over other cells, no rows of the log (B10)",
-        "  note: 1 number of column B was text",
+        "  passed over 1: a line of totals (B10)",
+        "  read 1: numbers typed as text (B9)",
+        "  read 1: a redshift of exactly 0, which may stand for a missing value (B8)",
+        "  read 1: a limit (B3)",
+        "  note: the heading names no frame; redshifts are taken as in the CMB frame, which matters"
+        " below 0.1 (1 of them)",
         "  these read filled cells and may show old results: formulas on sheet 'Summary' (A1:A2);"
         " names (Ages); 1 chart on sheet 'Log'",
         "  Excel recalculates them when it opens the file; in LibreOffice press Ctrl+Shift+F9",
@@ -90,37 +93,49 @@ def test_parameters_of_ones_own_are_stated(tmp_path: Path) -> None:
 
 
 def test_a_great_many_reasons_do_not_make_the_report_long(tmp_path: Path) -> None:
-    rows = [["z", "a []"], [1.0], *([f"remark {number}"] for number in range(40))]
+    texts = ["2,3", "2,345", "1 2", "2-3", "1.2/3.4", "0.5→0.7", "12:30", "1.2.3", "2.3a", "1.3d3"]
+    texts += ["½", "2.3 (2)", "(2.3)", "2.3+0.1", "tbc", "see below", "2.3 Mpc2", "10³"]
+    rows = [["z", "a []"], [1.0], *([text] for text in texts for _ in range(2))]
     result = fill(write_log(tmp_path / "log.xlsx", rows))
+    counts = json_report(result)["left_by_reason"]
+    assert len(counts) > 14
     lines = text_report(result).splitlines()
     assert len(lines) < 20
-    assert "  left 28: for 28 further reasons; --report FILE.json lists all" in lines
-    assert len(json_report(result)["left_by_reason"]) == 40
+    hidden = list(counts.values())[12:]
+    assert (
+        f"  left {sum(hidden)}: for {len(hidden)} further reasons; --report FILE.json lists all"
+    ) in lines
+    assert "  left 2: not read: a range, not one value (A9 '2-3', A10 '2-3')" in lines
 
 
 def test_the_json_holds_everything(result: FillResult) -> None:
     data = json.loads(json.dumps(json_report(result), allow_nan=False))
     assert data["format"] == "epochbook fill report 1"
-    assert (data["file"], data["filled"]) == ("log.xlsx", 5)
+    assert (data["file"], data["filled"]) == ("log.xlsx", 7)
     assert data["kept"] == "log (kept 2026-12-01 14.03.22).xlsx"
     assert data["parameters"]["name"] == "planck 2018"
     assert "A&A 641, A6" in data["parameters"]["citation"]
     (sheet,) = data["sheets"]
-    assert (sheet["sheet"], sheet["header_row"], sheet["passed_over"]) == ("Log", 1, ["B10"])
+    assert (sheet["sheet"], sheet["header_row"]) == ("Log", 1)
+    assert sheet["passed_over"] == [{"cell": "B10", "reason": "a line of totals", "text": None}]
+    assert sheet["remarks"]["a limit"] == ["B3"]
     assert sheet["columns"][0] == {
         "column": "C",
         "heading": "Age [Gyr]",
+        "holds": "values",
         "measure": "age",
         "unit": "Gyr",
         "source_column": "B",
         "source_measure": "redshift",
         "source_unit": "",
-        "filled": 3,
+        "filled": 4,
+        "limits": 1,
         "added": False,
     }
-    assert [left["cell"] for left in sheet["left"]] == ["D8", "B3", "B4", "B5", "B6", "B7"]
-    assert data["left_by_reason"]["not read: >6"] == 1
-    assert sum(data["left_by_reason"].values()) == 6
+    assert [left["cell"] for left in sheet["left"]] == ["D8", "B4", "B5", "B6", "B7"]
+    assert [left["text"] for left in sheet["left"]] == [None, "-0.1", "-0.2", "-0.3", "-0.4"]
+    assert data["left_by_reason"]["distance modulus does not exist at redshift 0"] == 1
+    assert sum(data["left_by_reason"].values()) == 5
     assert sheet["readers"] == {
         "cells": {"Summary": ["A1:A2"]},
         "names": ["Ages"],

@@ -124,10 +124,11 @@ def test_a_merge_that_is_no_range_is_refused() -> None:
 
 def test_measures_without_their_unit_are_told() -> None:
     reading = reading_of(grid(["z", "Age", "D_C", "Note"], [1.0]))
-    assert reading.lacking_units() == [
-        "heading 'Age' (B1) has no unit and is left alone; write 'Age [Gyr]'",
-        "heading 'D_C' (C1) has no unit and is left alone; write 'D_C [Mpc]'",
+    assert reading.doubts() == [
+        "heading 'Age' (B1) is left alone: age without a unit; write 'Age [Gyr]'",
+        "heading 'D_C' (C1) is left alone: comoving distance without a unit; write 'D_C [Mpc]'",
     ]
+    assert len(reading.doubts(settled=2)) == 1
 
 
 def test_the_last_used_column_is_that_of_the_last_cell_with_something() -> None:

@@ -6,15 +6,17 @@ import pytest
 from hypothesis import given, settings
 
 from tests.workbook_tools.odd_sheets import LAST_COLUMN, odd_sheets, view_of
-from tests.workbook_tools.small_sheets import DATE_STYLE, PART, cell, row, scan_of
+from tests.workbook_tools.small_sheets import PART, cell, row, rules, scan_of
 from workbook_tools.errors import Refusal
 from workbook_tools.sheet_scan import SheetScan
 from workbook_tools.typed_cells import (
     ABSENT,
     EMPTY,
+    FORMULA,
     LEFT,
     NUMBER,
     SUMS_UP,
+    TEXT,
     WHITE,
     ColumnCells,
     read_columns,
@@ -27,8 +29,7 @@ TEXTS = ("2.31", ">6", " ", "1e400")
 def column(scan: SheetScan, number: int = 1, rows: range | None = None) -> ColumnCells:
     """Read one column; style 9 is one of dates."""
     indices = range(len(scan)) if rows is None else rows
-    found = read_columns(scan, [number], indices, TEXTS.__getitem__, lambda s: s == DATE_STYLE)
-    return found[number]
+    return read_columns(scan, [number], indices, rules(TEXTS), lambda column: ())[number]
 
 
 def only(content: str, attributes: str = "") -> ColumnCells:
@@ -68,19 +69,21 @@ def test_numbers_and_text_that_is_plainly_a_number(
 @pytest.mark.parametrize(
     ("content", "attributes", "reason"),
     [
-        ("<v>1</v>", ' t="s"', "not read: >6"),
-        ("<v>3</v>", ' t="s"', "not read: 1e400"),
-        ("<v>1e400</v>", "", "not read: 1e400"),
-        ("<v>1,5</v>", "", "not read: 1,5"),
-        ("<v>NaN</v>", "", "not read: NaN"),
-        ("<is><t>tbc\nlater</t></is>", ' t="inlineStr"', "not read: tbc later"),
-        ("<is><t>2.5 Gyr</t></is>", ' t="inlineStr"', "not read: 2.5 Gyr"),
-        ("<v>1</v>", ' t="b"', "not read: TRUE"),
-        ("<v>0</v>", ' t="b"', "not read: FALSE"),
-        ("<v>#N/A</v>", ' t="e"', "a formula error: #N/A"),
-        ("<v>46024</v>", ' s="9"', "a date, not a number; what was typed is lost"),
-        ("<f>TODAY()</f><v>46024</v>", ' s="9"', "a date, not a number; what was typed is lost"),
-        ("<v>2026-01-02</v>", ' t="d"', "a date, not a number; what was typed is lost"),
+        ("<v>3</v>", ' t="s"', "not read: a number too large"),
+        ("<v>1e400</v>", "", "not read: a number too large"),
+        ("<v>1,5</v>", "", "not read: looks like a decimal comma; use --decimal-comma"),
+        ("<is><t>tbc\nlater</t></is>", ' t="inlineStr"', "not read: no number"),
+        ("<is><t>tbc</t></is>", ' t="inlineStr"', "no value yet"),
+        ("<v>1</v>", ' t="b"', "not read: true or false and no number"),
+        ("<v>0</v>", ' t="b"', "not read: true or false and no number"),
+        ("<v>#N/A</v>", ' t="e"', "a formula error"),
+        ("<v>46024</v>", ' s="9"', "a date that a spreadsheet program made of something"),
+        (
+            "<f>TODAY()</f><v>46024</v>",
+            ' s="9"',
+            "a date that a spreadsheet program made of something",
+        ),
+        ("<v>2026-01-02</v>", ' t="d"', "a date that a spreadsheet program made of something"),
         ("<f>B1*2</f>", "", "a formula without a stored result; recalculate and save the"),
         ("<f>B1*2</f><v></v>", "", "a formula without a stored result; recalculate and save the"),
         ("<f>SUM(B1:B5)</f><v>3</v>", "", SUMS_UP),
@@ -150,7 +153,7 @@ def test_a_formula_over_several_rows_is_no_row_of_the_log(formula: str) -> None:
 )
 def test_a_formula_within_a_row_gives_its_stored_number(formula: str) -> None:
     cells = only(f"<f>{formula}</f><v>2</v>")
-    assert (list(cells.kinds), cells.from_formulas) == ([NUMBER], 1)
+    assert (list(cells.kinds), cells.remarks) == ([NUMBER], {FORMULA: [0]})
 
 
 def test_totals_that_share_a_formula_are_known_in_every_column() -> None:
@@ -179,13 +182,12 @@ def test_only_the_rows_asked_for_are_read() -> None:
 def test_numbers_from_text_and_from_formulas_are_counted() -> None:
     scan = scan_of(row(1, 1.5) + row(2, "2.5") + '<row r="3"><c r="A3"><f>1</f><v>1</v></c></row>')
     cells = column(scan)
-    assert (cells.from_text, cells.from_formulas, cells.count(NUMBER)) == (1, 1, 3)
+    assert (cells.remarks, cells.count(NUMBER)) == ({TEXT: [1], FORMULA: [2]}, 3)
 
 
 def test_long_texts_are_cut_for_the_report() -> None:
     cells = only(f"<is><t>{'remark ' * 30}</t></is>", ' t="inlineStr"')
-    assert cells.reasons[0].startswith("not read: remark remark")
-    assert len(cells.reasons[0]) == len("not read: ") + 60
+    assert cells.shown[0] == ("remark " * 30)[:57] + "..."
 
 
 @given(odd_sheets())
@@ -198,7 +200,7 @@ def test_numbers_of_odd_sheets_are_those_that_lxml_reads(xml: bytes) -> None:
         if c.kind == "n" and c.formula is None and c.value
     }
     columns = range(1, 2 * LAST_COLUMN + 1)
-    found = read_columns(scan, columns, range(len(scan)), TEXTS.__getitem__, lambda style: False)
+    found = read_columns(scan, columns, range(len(scan)), rules(TEXTS), lambda column: ())
     numbers = {
         (scan.numbers[position], number): cells.numbers[position]
         for number, cells in found.items()
@@ -232,5 +234,5 @@ def test_what_a_cell_shows_is_read_as_text() -> None:
         '<row r="1"><c r="A1"/><c r="B1" t="s"><v>1</v></c><c r="C1" t="b"><v> 1 </v></c>'
         '<c r="D1"><v>2.5</v></c><c r="E1" t="inlineStr"><is><t>a&amp;b</t></is></c></row>'
     )
-    shown = [shown_text(scan, one, TEXTS.__getitem__) for one in scan.cells(0)]
+    shown = [shown_text(scan, one, rules(TEXTS)).text for one in scan.cells(0)]
     assert shown == ["", ">6", "TRUE", "2.5", "a&b"]
