@@ -10,6 +10,7 @@ from dataclasses import replace
 import numpy as np
 from numpy.typing import NDArray
 
+from epochconv.number_text import plain_number
 from epochconv.typed_text import typed_text
 from workbook_tools.agreement import Agreement, disagreement
 from workbook_tools.answers import Answers, FloatArray, Moments
@@ -36,6 +37,8 @@ LIMIT_FLAG_OF = "limit flag of {}"
 """Heading of a column of signs, for the name of the column that it belongs to."""
 
 _LIMIT_DIGITS = (3, 5)
+# Nobody types more of them; a stored 14.199999999999999 was 14.2.
+_TYPED_DIGITS = 12
 _CUT = "an error that reaches beyond what is possible, cut there"
 # Sides of an error that differ by less are shown alike.
 _SYMMETRIC = 1e-3
@@ -137,13 +140,14 @@ class ColumnFiller:
         where = self._where(column)
         passed = [(p, why) for p, why in source.passed_over.items() if self.wanted[p]]
         self.plan.passed_over += [NamedCell(where(p), why) for p, why in sorted(passed)]
-        for position in sorted(set(source.reasons) | set(self.moments.reasons)):
+        reasons = self.moments.reasons | source.reasons
+        texts = self.reading.texts_of(column) if reasons else {}
+        for position in sorted(reasons):
             if self.wanted[position]:
-                reason = source.reasons.get(position) or self.moments.reasons[position]
                 shown = source.cells.shown.get(position, "")
-                if position not in source.reasons:
-                    shown = f"{source.cells.numbers[position]:.6g}"
-                self.plan.left.append(NamedCell(where(position), reason, shown))
+                if source.cells.kinds[position] != LEFT:
+                    shown = _as_typed(texts.get(position, ""))
+                self.plan.left.append(NamedCell(where(position), reasons[position], shown))
         for remark, positions in source.remarks.items():
             read = (p for p in positions if p not in self.moments.reasons)
             asked = [where(p) for p in read if self.wanted[p]]
@@ -324,6 +328,13 @@ class ColumnFiller:
                 f" {one.a1}, which is merged or belongs to one formula; fill another column, or"
                 " undo that first"
             )
+
+
+def _as_typed(text: str) -> str:
+    """Return what a cell shows in one line, a number without the digits that only files hold."""
+    line = " ".join(text.split())
+    number = plain_number(line) if len(line) > _TYPED_DIGITS else None
+    return line if number is None else f"{number:.6g}"
 
 
 def _sizes_for(role: Role, answers: Answers) -> FloatArray:

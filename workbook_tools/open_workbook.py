@@ -98,7 +98,8 @@ class OpenWorkbook:
             self._style_test(StyleSheet.is_struck),
             decimal_comma=request.decimal_comma,
             brackets_are_notes=request.brackets_are_notes,
-            missing=frozenset(request.missing),
+            # As programs write them that keep fewer digits: 99.99 may stand as 99.98999999999999.
+            missing=frozenset(float(f"{n:.{d}g}") for n in request.missing for d in (15, 16, 17)),
         )
         reading = SheetReading(
             sheet, scan, self._tables(sheet), self._pivots(sheet), rules, request.header_row

@@ -265,7 +265,9 @@ def _in_unit(number: float, typed: Unit, unit: Unit) -> float:
 
 def _suspects(values: FloatArray, column: int) -> list[str]:
     """Return a sentence for each number that looks like a missing-value code."""
-    counts = Counter(values[np.isin(values, _SUSPECTS)].tolist())
+    # Some programs write 99.99 as 99.98999999999999.
+    rounded = np.round(values, 6)
+    counts = Counter(rounded[np.isin(rounded, _SUSPECTS)].tolist())
     return [
         f"{value:g} stands {count} times in column {column_letters(column)} and looks like a code"
         f" for a missing value; if it is one, say so with --missing={value:g}"

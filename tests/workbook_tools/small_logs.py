@@ -35,7 +35,20 @@ class Formula(NamedTuple):
     result: float | str
 
 
-Value = float | str | bool | Formula | datetime.date | None
+class Dressed(NamedTuple):
+    """A value in a format of XlsxWriter: `num_format`, `font_strikeout`, …"""
+
+    value: float | str | None
+    format: Mapping[str, object]
+
+
+class Runs(NamedTuple):
+    """A rich text: runs, each with its format, {} for none."""
+
+    runs: Sequence[tuple[str, Mapping[str, object]]]
+
+
+Value = float | str | bool | Formula | Dressed | Runs | datetime.date | None
 Grid = Sequence[Sequence[Value]]
 Dress = Callable[[Workbook, Worksheet], None]
 
@@ -62,7 +75,7 @@ def write_log(
         book.set_properties({"created": datetime.datetime(2026, 1, 1)})
         day = book.add_format({"num_format": "yyyy-mm-dd"})
         sheets = [
-            _write(book.add_worksheet(name), grid, day)
+            _write(book, book.add_worksheet(name), grid, day)
             for name, grid in {"Log": rows, **(more or {})}.items()
         ]
         if dress is not None:
@@ -71,11 +84,18 @@ def write_log(
     return repack(path, path, quiet(parts))
 
 
-def _write(sheet: Worksheet, rows: Grid, day: object) -> Worksheet:
+def _write(book: Workbook, sheet: Worksheet, rows: Grid, day: object) -> Worksheet:
     for row, values in enumerate(rows):
         for column, value in enumerate(values):
             if isinstance(value, Formula):
                 sheet.write_formula(row, column, value.text, None, value.result)
+            elif isinstance(value, Dressed):
+                look = book.add_format(dict(value.format))
+                write = sheet.write_string if isinstance(value.value, str) else sheet.write
+                write(row, column, value.value, look)
+            elif isinstance(value, Runs):
+                looks = [(book.add_format(dict(look)), text) for text, look in value.runs]
+                sheet.write_rich_string(row, column, *(part for pair in looks for part in pair))
             elif isinstance(value, str):
                 sheet.write_string(row, column, value)
             elif isinstance(value, datetime.date):
