@@ -27,6 +27,7 @@ from tests.workbook_tools.small_logs import (
 from workbook_tools.command import main
 
 Said = tuple[int, str, str]
+_CLONE = Path(__file__).resolve().parents[2]
 
 
 @pytest.fixture
@@ -241,15 +242,16 @@ def test_a_screen_without_greek_letters_is_no_traceback(
 
 def test_the_module_runs_as_a_program(path: Path) -> None:
     command = [sys.executable, "-m", "workbook_tools", "fill", str(path)]
-    done = subprocess.run(command, capture_output=True, encoding="utf-8", check=False)
-    assert (done.returncode, done.stderr) == (0, "")
-    assert "3 cells filled from B 'z'" in done.stdout
+    done = subprocess.run(command, capture_output=True, cwd=_CLONE, check=False)
+    assert (done.returncode, done.stderr) == (0, b"")
+    assert b"3 cells filled from B 'z'" in done.stdout
 
 
 def test_help_answers_without_the_libraries_for_numbers() -> None:
     code = "import sys, workbook_tools.command as c\ntry: c.main(['fill', '--help'])\n"
     code += "finally: assert not {'numpy', 'scipy', 'pint', 'openpyxl'} & set(sys.modules)"
-    done = subprocess.run([sys.executable, "-c", code], capture_output=True, check=False)
+    command = [sys.executable, "-c", code]
+    done = subprocess.run(command, capture_output=True, cwd=_CLONE, check=False)
     assert (done.returncode, done.stderr) == (0, b"")
 
 
