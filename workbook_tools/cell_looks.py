@@ -71,7 +71,8 @@ class CellLooks:
 
     def of_heading(self, column: int) -> int:
         """Return the style of the last heading up to a column, 0 where there is none."""
-        assert self.reading.header_index is not None
+        if self.styles is None or self.reading.header_index is None:
+            return 0
         cells = self.reading.scan.cells(self.reading.header_index)
         styles = [c.style for c in cells if c.column <= column and c.column in self.reading.texts]
         return styles[-1] if styles else 0
