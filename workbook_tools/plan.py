@@ -57,6 +57,7 @@ class SheetPlan:
 
     Attributes:
         reading: the sheet.
+        source: the column to convert from, None where the sheet has none.
         columns: the columns that get values.
         cells: the new cells.
         grown: the table that grows and the names of its new columns, or None.
@@ -66,6 +67,7 @@ class SheetPlan:
     """
 
     reading: SheetReading
+    source: int | None = None
     columns: list[FilledColumn] = field(default_factory=list)
     cells: list[NewCells] = field(default_factory=list)
     grown: tuple[Table, list[str]] | None = None
@@ -93,10 +95,12 @@ def plan_sheet(reading: SheetReading, request: Request, styles: StyleSheet | Non
     if source is None:
         return plan
     column, heading = source
+    (cells,) = reading.columns([column])
+    if column in reading.texts or cells.count(NUMBER) or cells.count(LEFT):
+        plan.source = column
     targets, added = _targets(plan, request, column, heading)
     if not reading.rows or not (targets or added):
         return plan
-    (cells,) = reading.columns([column])
     numbers = np.array(cells.numbers)
     numbers[np.frombuffer(cells.kinds, dtype=np.uint8) != NUMBER] = np.nan
     moments = Moments(numbers, heading.measure, heading.unit, request.history, request.side)
