@@ -78,7 +78,18 @@ LOG_DISTANCE = Measure(
     missing="does not exist at no distance",
 )
 
-GUESTS = (STRETCH, SWING, LOG_DISTANCE)
+# One that returns the very array that it is given.
+PLAIN = replace(
+    STRETCH,
+    name="plain stretch",
+    symbol="s_p",
+    aliases=(),
+    value_at=lambda moment, history: moment.redshift,
+    moment_of=lambda values, history: Moment(redshift=values),
+    range_of=lambda history: (0.0, 1e10),
+)
+
+GUESTS = (STRETCH, SWING, LOG_DISTANCE, PLAIN)
 
 BROKEN = {
     "unknown unit": replace(STRETCH, unit="furlong"),

@@ -162,6 +162,14 @@ def test_rescaled_measure_of_a_stranger_uses_the_inverse_of_the_other() -> None:
 
 
 @pytest.mark.usefixtures("guests")
+def test_measure_that_hands_out_what_it_is_given_gives_no_access_to_it() -> None:
+    values = np.array([1.0, 2.0])
+    found = epochconv.convert(values, "redshift", "plain stretch")
+    found.magnitude[:] = 9.0
+    assert values.tolist() == [1.0, 2.0]
+
+
+@pytest.mark.usefixtures("guests")
 def test_searched_measure_that_turns_over_names_every_answer() -> None:
     """sin x = 0.5 at x = π/6, 5π/6, and both of these a full turn or two or three later."""
     with pytest.raises(TwoAnswersError) as caught:

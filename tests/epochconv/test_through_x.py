@@ -167,6 +167,16 @@ def test_two_epochs_are_both_named_and_either_side_is_given() -> None:
     assert_close(sides, [0.676146, 3.78423], relative=1e-6)
 
 
+def test_epochs_named_are_those_of_the_value_named() -> None:
+    with pytest.raises(TwoAnswersError) as caught:
+        converted(
+            [np.nan, 1500.0, 10.0], measures.ANGULAR_DIAMETER_DISTANCE, measures.AGE, shape=(3,)
+        )
+    assert caught.value.value == 1500.0
+    assert_close(caught.value.redshifts, [0.676146, 3.78423], relative=1e-6)
+    assert "(at index 1, the first of 2 such values)" in str(caught.value)
+
+
 def test_top_of_a_map_is_one_epoch_and_needs_no_side() -> None:
     with pytest.raises(OutOfRangeError) as caught:
         converted([1e5], measures.ANGULAR_DIAMETER_DISTANCE, measures.REDSHIFT)
