@@ -338,7 +338,7 @@ def _lowest(law: Expansion, x: FloatArray) -> tuple[float, float]:
 
 def _items(name: str, value: Any, count: int) -> tuple[Any, ...]:
     if is_quantity(value):
-        value = [item * value.units for item in np.atleast_1d(value.magnitude)]
+        value = [type(value)(item, value.units) for item in np.atleast_1d(value.magnitude)]
     try:
         items = tuple(value)
     except TypeError:
