@@ -19,7 +19,7 @@ from epochconv.units import Unit, unit_named
 
 _ELECTRONVOLT = Unit("eV", "energy", constants.ELECTRONVOLT_J, "electron_volt", ("eV",))
 _SPENT = 1e-12
-# Beyond this it is matter or curvature, and not the dark energy, whose squares overflow.
+# Beyond this density today it is this part, and not the dark energy, that overflows.
 _ABSURD = 1e100
 
 
@@ -264,7 +264,7 @@ def _expansion_of(parameters: tuple[Any, ...]) -> Expansion:
         w0=w0,
         wa=wa,
     )
-    _check_big_bang(law, matter)
+    _check_big_bang(law, parameters)
     return law
 
 
@@ -278,9 +278,9 @@ def _photons(temperature: float, rate: float) -> float:
         ) from None
 
 
-def _check_big_bang(law: Expansion, matter: float) -> None:
+def _check_big_bang(law: Expansion, parameters: tuple[Any, ...]) -> None:
     """Refuse a history that never began, or whose E² is not above zero all the way back."""
-    w0, wa = law.w0, law.wa
+    rate, matter, curvature, (w0, wa), temperature, _, _, species = parameters
     if law.late_power <= 0.0:
         raise ArgumentError(
             f"matter={matter!r}: with no matter, curvature or radiation that leads early on there "
@@ -291,9 +291,16 @@ def _check_big_bang(law: Expansion, matter: float) -> None:
         lowest, where = _lowest(law, x)
         late = law.late_shape(HIGHEST_X + np.linspace(0.0, 60.0, 241))
     if not np.isfinite(lowest) or not np.all(np.isfinite(late)):
-        for name, value in (("matter", matter), ("curvature", law.curvature)):
-            if abs(value) > _ABSURD:
-                raise ArgumentError(f"{name}={value!r} is too large; give a fraction of the budget")
+        for cause, density in (
+            (f"matter={matter!r}", matter),
+            (f"curvature={curvature!r}", curvature),
+            (f"hubble_constant={rate!r} with temperature_today={temperature!r}", law.photons),
+            (f"neutrino_number={species!r}", law.massless_neutrinos),
+        ):
+            if abs(density) > _ABSURD:
+                raise ArgumentError(
+                    f"{cause} makes densities beyond all numbers; check the number and its unit"
+                )
         raise ArgumentError(
             f"dark_energy=({w0!r}, {wa!r}) grows beyond all numbers in the early universe; "
             "give w0 + wa below about 1"
@@ -331,7 +338,7 @@ def _lowest(law: Expansion, x: FloatArray) -> tuple[float, float]:
 
 def _items(name: str, value: Any, count: int) -> tuple[Any, ...]:
     if is_quantity(value):
-        value = [item * value.units for item in np.atleast_1d(value.magnitude)]
+        value = [type(value)(item, value.units) for item in np.atleast_1d(value.magnitude)]
     try:
         items = tuple(value)
     except TypeError:

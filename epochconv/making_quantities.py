@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import re
 import weakref
 from typing import Any
 
@@ -16,6 +17,9 @@ from epochconv.reading_quantities import (
     table_unit_of,
 )
 from epochconv.units import Unit, factor, find_unit
+
+# The parsers of some registries pass over all other signs in silence, and read "Mpc?" as Mpc.
+_UNIT_TEXT = re.compile(r"[\w\s*/^().+·⁻⁰¹²³⁴⁵⁶⁷⁸⁹%°-]*")
 
 # Quantity class of a registry -> {(unit wanted, our unit): (names of its units, factor)}.
 # A unit object in place of the names would keep its registry alive for ever.
@@ -67,6 +71,8 @@ def _target(make: Any, wanted: Any, unit: Unit) -> tuple[Any, float]:
     if isinstance(wanted, str):
         ours = find_unit(wanted)
         try:
+            if ours is None and not _UNIT_TEXT.fullmatch(wanted):
+                raise ValueError
             one = make(1.0, wanted if ours is None else ours.long_name)
         except Exception:  # a registry's parser raises many kinds for what it cannot read
             raise ArgumentError(f"unit={wanted!r} is not a unit that is known here") from None

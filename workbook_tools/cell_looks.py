@@ -87,6 +87,8 @@ class CellLooks:
         Args:
             index: of the row in the scan.
         """
+        if self.styles is None:
+            return 0
         cells = self.reading.scan.cells(index)
         styles = [c.style for c in cells if c.column <= column and c.column in self.reading.texts]
         return styles[-1] if styles else 0

@@ -25,7 +25,7 @@ from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_plan import SheetPlan
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import StyleSheet
-from workbook_tools.typed_cells import LIMIT, NUMBER
+from workbook_tools.typed_cells import LEFT, LIMIT, NUMBER
 from workbook_tools.value_columns import read_values
 from workbook_tools.warnings_of_columns import column_warnings
 
@@ -47,6 +47,9 @@ def plan_sheet(reading: SheetReading, request: Request, styles: StyleSheet | Non
     if source is None:
         return plan
     column, heading = source
+    (cells,) = reading.columns([column])
+    if column in reading.texts or any(cells.count(kind) for kind in (NUMBER, LIMIT, LEFT)):
+        plan.source = column
     targets, added = _targets(plan, request, column, heading)
     if not reading.rows or not (targets or added):
         return plan

@@ -21,39 +21,45 @@ def plan_workbook(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetP
     plans: list[SheetPlan] = []
     notes: list[str] = []
     headings: list[Heading] = []
+    sources = 0
     for sheet in workbook.sheets(request.sheet):
         reading = workbook.reading(sheet, request)
         if request.source is None and not reading.headings:
             continue
         plan = plan_sheet(reading, request, workbook.styles)
-        source = next((one.source_column for one in plan.columns), None)
-        notes += reading.doubts(source)
+        notes += reading.doubts(plan.source)
         headings += reading.headings.values()
+        sources += plan.source is not None
         if plan.columns or plan.left or plan.notes:
             plans.append(plan)
             workbook.hold(sheet.part, reading.scan.xml)
-    for text in request.only:
-        if not any(is_called(heading, text) for heading in headings):
-            raise UsageError(
-                f"--only {text!r} is no heading of {workbook.label} that can be filled; name one as"
-                " it stands, such as 'Age [Gyr]'"
-            )
+    _check_request(workbook.label, request, headings, sources)
     several = [plan.reading.sheet.name for plan in plans if plan.columns or plan.left]
     if request.add and request.sheet is None and len(several) > 1:
         listed = ", ".join(map(repr, several))
         raise UsageError(f"--add fits several sheets ({listed}); name one with --sheet")
-    if request.source is not None and not plans:
+    check_protection(workbook, [plan for plan in plans if plan.changed], request.allow_protected)
+    return plans, notes
+
+
+def _check_request(label: str, request: Request, headings: list[Heading], sources: int) -> None:
+    """Raise where the request names what no sheet has; `sources` is on how many there is one."""
+    for text in request.only:
+        if not any(is_called(heading, text) for heading in headings):
+            raise UsageError(
+                f"--only {text!r} is no heading of {label} that can be filled; name one as it"
+                " stands, such as 'Age [Gyr]'"
+            )
+    if request.source is not None and not sources:
         raise UsageError(
-            f"no sheet of {workbook.label} has a column {request.source!r} with something to"
-            " convert; name a heading as it stands, or letters such as C:C"
+            f"no sheet of {label} has a column {request.source!r} with something to convert; name a"
+            " heading as it stands, or letters such as C:C"
         )
-    if request.add and not plans:
+    if request.add and not sources:
         raise UsageError(
-            f"{workbook.label} has no column to convert from that is recognised; name one with"
+            f"{label} has no recognised column with numbers to convert from; name one with"
             " --source, such as --source C:C --as redshift"
         )
-    check_protection(workbook, plans, request.allow_protected)
-    return plans, notes
 
 
 def check_protection(workbook: OpenWorkbook, plans: list[SheetPlan], allowed: bool) -> None:

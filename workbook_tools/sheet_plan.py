@@ -58,6 +58,7 @@ class SheetPlan:
 
     Attributes:
         reading: the sheet.
+        source: the column to convert from, None where the sheet has none.
         columns: the columns that get values.
         cells: the new cells.
         grown: the table that grows and the names of its new columns, or None.
@@ -68,6 +69,7 @@ class SheetPlan:
     """
 
     reading: SheetReading
+    source: int | None = None
     columns: list[FilledColumn] = field(default_factory=list)
     cells: list[NewCells] = field(default_factory=list)
     grown: tuple[Table, list[str]] | None = None

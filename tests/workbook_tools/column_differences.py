@@ -8,7 +8,7 @@ from tests.workbook_tools.tag_differences import Difference, NotPermittedError
 from tests.workbook_tools.xml_nodes import Node
 from workbook_tools.splice import EditKind
 
-_MAY_CHANGE = {"width", "customWidth", "bestFit"}
+_MAY_CHANGE = {"width", "customWidth", "bestFit", "hidden"}  # a new column is shown
 _OFF = {("hidden", "0"), ("hidden", "false")}  # the same as no attribute
 Attributes = dict[str, str]
 

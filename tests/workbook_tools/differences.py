@@ -1,13 +1,12 @@
 """Every difference between two versions of a part, sorted into the closed list of edits.
 
 This is computed from the two versions alone, by walking both side by side; it knows nothing of
-what the fill says it did. Whatever is not in the list raises `NotPermittedError`, so a comparison
-that ends proves that undoing the listed differences, and nothing else, gives the old bytes.
+what the fill says it did. Whatever is not in the list raises `NotPermittedError`.
 """
 
 from __future__ import annotations
 
-from collections.abc import Iterator
+from typing import NamedTuple
 
 from tests.workbook_tools.column_differences import column_differences, introduced_columns
 from tests.workbook_tools.tag_differences import Difference, NotPermittedError, tag_differences
@@ -19,9 +18,6 @@ _APPENDED = {
     ("cellXfs", "xf"): EditKind.STYLE_APPENDED,
     ("numFmts", "numFmt"): EditKind.NUMBER_FORMAT_APPENDED,
     ("tableColumns", "tableColumn"): EditKind.TABLE_COLUMN_APPENDED,
-    # A workbook that had no styles at all gets its first.
-    ("Types", "Override"): EditKind.STYLE_APPENDED,
-    ("Relationships", "Relationship"): EditKind.STYLE_APPENDED,
 }
 # (parent, child) -> the edit that puts such a child where there was none.
 _INTRODUCED = {
@@ -31,34 +27,68 @@ _INTRODUCED = {
 }
 
 
-def part_differences(old: bytes, new: bytes) -> list[Difference]:
-    """Differences of two versions of a part, in file order.
+class PartChange(NamedTuple):
+    """What a part went through, and what it is when exactly that is undone."""
+
+    differences: list[Difference]
+    undone: bytes
+
+
+def part_change(old: bytes, new: bytes) -> PartChange:
+    """Differences of two versions of a part, in file order; and the new one with them undone.
+
+    Undoing takes every byte from the new version but for the differences themselves.
 
     Raises:
         NotPermittedError: one is not in the closed list; the text says where.
         ValueError: one of the two is not well-formed.
     """
-    found = list(_children(read_nodes(old), read_nodes(new)))
-    filled = {column for difference in found for _, column in difference.cells}
-    for difference in found:
+    walk = _Walk()
+    walk.children(read_nodes(old), read_nodes(new))
+    filled = {column for difference in walk.found for _, column in difference.cells}
+    for difference in walk.found:
         if not filled.issuperset(difference.columns):
             raise NotPermittedError(f"the width of columns {difference.where} changed, unfilled")
-    return found
+    return PartChange(walk.found, b"".join(walk.undone))
 
 
-def _element(old: Node, new: Node, parent: str) -> Iterator[Difference]:
-    if old.raw == new.raw:
-        return
-    if not old.tag or old.prefix != new.prefix:
-        raise NotPermittedError(f"{old.raw[:80]!r} became {new.raw[:80]!r}")
-    if old.name == "c":
-        yield _replaced(old, new)
-        return
-    yield from tag_differences(old, new, parent)
-    if old.name == "cols":
-        yield from column_differences(old, new)
-    else:
-        yield from _children(old, new)
+class _Walk:
+    """Walks two versions side by side."""
+
+    def __init__(self) -> None:
+        self.found: list[Difference] = []
+        self.undone: list[bytes] = []
+
+    def children(self, old: Node, new: Node) -> None:
+        """Compare the children; what is only in `new` must be a permitted insertion."""
+        index = 0
+        for child in new.children:
+            mate = old.children[index] if index < len(old.children) else None
+            if mate is not None and (mate.name, mate.place) == (child.name, child.place):
+                self.element(mate, child, new.name)
+                index += 1
+            else:
+                self.found.append(_inserted(old, new, child, old.children[index:]))
+        if index < len(old.children):
+            raise NotPermittedError(f"{old.children[index].raw[:80]!r} is gone or moved")
+
+    def element(self, old: Node, new: Node, parent: str) -> None:
+        """Compare two versions of one element, or of one piece of text."""
+        if old.raw == new.raw:
+            self.undone.append(new.raw)
+        elif not old.tag or old.prefix != new.prefix:
+            raise NotPermittedError(f"{old.raw[:80]!r} became {new.raw[:80]!r}")
+        elif old.name == "c":
+            self.found.append(_replaced(old, new))
+            self.undone.append(old.raw)
+        elif old.name == "cols":
+            self.found += [*tag_differences(old, new, parent), *column_differences(old, new)]
+            self.undone.append(old.raw)
+        else:
+            self.found += tag_differences(old, new, parent)
+            self.undone.append(old.tag)
+            self.children(old, new)
+            self.undone.append(b"" if old.closes_itself else new.end_tag)
 
 
 def _replaced(old: Node, new: Node) -> Difference:
@@ -67,20 +97,6 @@ def _replaced(old: Node, new: Node) -> Difference:
     if old.elements or not plain or not new.elements:
         raise NotPermittedError(f"cell {old.raw[:80]!r} became {new.raw[:80]!r}")
     return Difference(EditKind.EMPTY_CELL_REPLACED, old.get("r"), cells=(new.place,))
-
-
-def _children(old: Node, new: Node) -> Iterator[Difference]:
-    """Walk the children side by side; what is only in `new` must be a permitted insertion."""
-    index = 0
-    for child in new.children:
-        mate = old.children[index] if index < len(old.children) else None
-        if mate is not None and (mate.name, mate.place) == (child.name, child.place):
-            yield from _element(mate, child, new.name)
-            index += 1
-        else:
-            yield _inserted(old, new, child, old.children[index:])
-    if index < len(old.children):
-        raise NotPermittedError(f"{old.children[index].raw[:80]!r} is gone or moved")
 
 
 def _inserted(old: Node, new: Node, child: Node, following: list[Node]) -> Difference:

@@ -117,6 +117,13 @@ def test_a_cell_without_a_number_has_neither_value_nor_reason() -> None:
         (
             "scale factor",
             "",
+            1e-11,
+            "scale factor is earlier than redshift 1e10, where the tables end"
+            " (1e-10 under planck 2018)",
+        ),
+        (
+            "scale factor",
+            "",
             1.5,
             "scale factor lies in the future (1 under planck 2018)",
         ),

@@ -65,7 +65,7 @@ def test_a_hidden_column_is_shown_and_its_neighbours_stay_hidden() -> None:
 
 
 def test_two_neighbours_are_cut_out_together() -> None:
-    result, kinds = changed('<col min="1" max="9"/>', {4: 12.0, 5: 13.0})
+    result, kinds = changed('<col min="1" max="9"/>', {5: 13.0, 4: 12.0})
     assert result == (
         '<col min="1" max="3"/><col min="4" max="4" width="12" customWidth="1"/>'
         '<col min="5" max="5" width="13" customWidth="1"/><col min="6" max="9"/>'

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import pytest
 
-from tests.workbook_tools.differences import part_differences
-from tests.workbook_tools.tag_differences import NotPermittedError
+from tests.workbook_tools.differences import part_change
+from tests.workbook_tools.tag_differences import Difference, NotPermittedError
 from workbook_tools.splice import EditKind
 
 HEAD = (
@@ -26,6 +26,13 @@ TABLE = (
     '<tableColumn id="1" name="a"/><tableColumn id="2" name="b"/></tableColumns></table>'
 )
 WORKBOOK = '<workbook><sheets><sheet name="Log"/></sheets></workbook>'
+
+
+def part_differences(old: bytes, new: bytes) -> list[Difference]:
+    """The differences, after a look whether undoing them gives the old bytes."""
+    change = part_change(old, new)
+    assert change.undone == old
+    return change.differences
 
 
 @pytest.mark.parametrize(

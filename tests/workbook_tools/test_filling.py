@@ -10,6 +10,8 @@ import zipfile
 from pathlib import Path
 
 import pytest
+from hypothesis import HealthCheck, given, settings
+from hypothesis import strategies as st
 
 import epochconv
 from tests.workbook_tools.package_rules import new_problems
@@ -143,6 +145,30 @@ def test_a_formula_without_a_stored_result_is_left(path: Path) -> None:
     assert (cell, reason.partition(";")[0]) == ("A3", "a formula without a stored result")
 
 
+_SOURCES = st.sampled_from([1.0, 2.0, 3.0, 0.0, "2", -0.5, ">6", True, " ", None])
+_TARGETS = st.sampled_from([None, None, None, "tbc", " "])
+
+
+@given(st.lists(st.tuples(_SOURCES, _TARGETS), min_size=1, max_size=8))
+@settings(deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
+def test_of_random_rows_each_ends_as_filled_or_named(
+    path: Path, rows: list[tuple[Value, Value]]
+) -> None:
+    """But for rows that have nothing to convert, and remarks beside a number that cannot be."""
+    write_log(path, [["z", "Age [Gyr]"], *rows])
+    output = path.with_name("filled.xlsx")
+    output.unlink(missing_ok=True)
+    result = fill(path, output=output, source="z")
+    new = new_cells(cells(path), output)
+    named = {cell for _, cell, _ in result.left}
+    for number, (source, target) in enumerate(rows, 2):
+        good = source in (0.0, 1.0, 2.0, 3.0, "2") and source is not True
+        blank = source in (None, " ")
+        assert (f"B{number}" in new) == (good and target is None)
+        assert (f"B{number}" in named) == (good and target is not None)
+        assert (f"A{number}" in named) == (not good and not blank and target is None)
+
+
 def test_a_formula_that_shows_nothing_is_nothing_to_do(path: Path) -> None:
     write_log(path, [["z", "Age [Gyr]"], [1.0], [Formula('=IF(1,"",2)', 2.0)]])
     with_parts(path, sheet=('<c r="A3"><f>IF(1,"",2)</f><v>2.0</v>', _EMPTY_RESULT))
@@ -158,6 +184,21 @@ def test_a_second_run_writes_nothing(path: Path) -> None:
     assert len(result.left) == 6
     assert (path.read_bytes(), path.stat().st_mtime_ns) == (before, stamp)
     assert len(dated_copies(path)) == 1
+
+
+@pytest.mark.parametrize("choices", [{"source": "z"}, {"source": "B:B"}])
+def test_a_second_run_with_a_named_source_writes_nothing_either(
+    path: Path, choices: dict[str, str]
+) -> None:
+    filled(write_log(path), **choices)
+    before = path.read_bytes()
+    assert not fill(path, **choices).written  # type: ignore[arg-type]  # per test
+    assert path.read_bytes() == before
+
+
+def test_a_named_source_that_holds_nothing_yet_is_no_mistake(path: Path) -> None:
+    write_log(path, [["Object", "z", "Age [Gyr]"], ["first"]])
+    assert not fill(path, source="z", add=["a []"]).written
 
 
 def test_new_rows_at_the_bottom_are_the_daily_case(path: Path) -> None:
@@ -271,7 +312,7 @@ def test_a_column_without_a_heading_is_converted_by_its_letters(path: Path) -> N
 
 
 def test_without_anything_to_convert_an_addition_is_refused(path: Path) -> None:
-    with pytest.raises(UsageError, match=r"log\.xlsx has no column to convert from that is recog"):
+    with pytest.raises(UsageError, match=r"log\.xlsx has no recognised column with numbers"):
         fill(write_log(path, [["Object", "magnitude"], ["first", 21.0]]), add=["Age [Gyr]"])
 
 

@@ -137,6 +137,8 @@ def test_headings_as_people_write_them(text: str, expected: tuple[str, str]) -> 
         "(Gyr)",
         "/ Gyr",
         "Age [Gyr",
+        "Age / (Gyrs",
+        "Age / aGyr)",
         "Age [Gyr)",
         "Age [[Gyr]]",
         "km/s/Mpc",

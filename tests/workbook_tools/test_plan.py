@@ -120,6 +120,14 @@ def test_a_sheet_without_a_source_or_without_blanks_gives_an_empty_plan() -> Non
         assert (made.columns, made.cells, made.left, made.changed) == ([], [], [], [])
 
 
+def test_a_plan_knows_its_source() -> None:
+    assert plan(log(["a", 1.0])).source == 2
+    assert plan(log(["a", None])).source is None
+    assert plan(log(["a", None]), source="z").source == 2
+    assert plan(log(["a", 1.0]), source="Note").source is None
+    assert plan(log(["a", 1.0]), source="Q:Q", source_measure="z").source is None
+
+
 def test_columns_of_one_measure_in_one_unit_do_not_fill_each_other() -> None:
     header = ("z", "z_phot", "Age [Gyr]", "Age [Myr]")
     rows = log([1.0, None], [2.0, None], header=header)

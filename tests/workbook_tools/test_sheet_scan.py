@@ -116,6 +116,7 @@ def test_the_outline_counts_its_offsets_in_the_whole_part() -> None:
     (columns,) = scan.outline.find_all("cols")
     assert scan.xml[columns.start : columns.end] == b'<cols><col min="1" max="2"/></cols>'
     assert scan.xml[scan.data.end_tag_start : scan.data.end] == b"</sheetData>"
+    assert scan.data.children == []
 
 
 def test_plain_numbers_and_shared_texts_come_with_row_place_and_style() -> None:
@@ -147,6 +148,19 @@ def test_a_child_of_a_shared_formula_has_the_text_of_the_first() -> None:
         '<c r="D2"><f t="shared" si="9"/></c><c r="E2"><f/></c></row>'
     )
     assert [scan.formula(cell) for cell in scan.cells(0)] == ["SUM(A1:A9)"] * 3 + ["", ""]
+
+
+def test_the_last_row_and_column_are_as_good_as_any() -> None:
+    scan = scan_of('<row r="1048576"><c r="XFD1048576"/></row>')
+    assert (list(scan.numbers), list(scan.last_columns)) == ([1048576], [16384])
+    assert [one.column for one in scan.cells(0)] == [16384]
+
+
+def test_the_last_cell_of_a_row_must_belong_to_it() -> None:
+    scan = scan_of('<row r="5"><c r="A5"/><c r="B55"/></row>')
+    assert scan.cells_regular
+    with pytest.raises(Refusal, match=r"out of order \(row 5\)"):
+        _ = scan.last_columns
 
 
 def test_rows_are_found_by_their_numbers() -> None:

@@ -180,9 +180,11 @@ def test_only_the_rows_asked_for_are_read() -> None:
 
 
 def test_numbers_from_text_and_from_formulas_are_counted() -> None:
-    scan = scan_of(row(1, 1.5) + row(2, "2.5") + '<row r="3"><c r="A3"><f>1</f><v>1</v></c></row>')
-    cells = column(scan)
-    assert (cells.remarks, cells.count(NUMBER)) == ({TEXT: [1], FORMULA: [2]}, 3)
+    formulas = "".join(
+        f'<row r="{number}"><c r="A{number}"><f>1</f><v>1</v></c></row>' for number in (4, 5)
+    )
+    cells = column(scan_of(row(1, 1.5) + row(2, "2.5") + row(3, "3") + formulas + row(6, 1.5)))
+    assert (cells.remarks, cells.count(NUMBER)) == ({TEXT: [1, 2], FORMULA: [3, 4]}, 6)
 
 
 def test_long_texts_are_cut_for_the_report() -> None:

@@ -64,6 +64,7 @@ _BOOK: dict[str, Callable[[Package], bool]] = {
     "calculation chain": lambda p: p.workbook_tree("calcChain") is not None,
     "defined names": lambda p: _root_has(p, "definedNames"),
     "external links": lambda p: _root_has(p, "externalReferences"),
+    "pivot table": lambda p: any("/pivotTables/" in name for name in p.contents),
     "no calculation element": lambda p: not _root_has(p, "calcPr"),
     "hidden sheet": lambda p: any(sheet.state != "visible" for sheet in p.sheets),
     "locked structure": lambda p: _root_has(p, "workbookProtection"),
@@ -119,6 +120,32 @@ _TEXT = {
 _RELATED = {
     "drawing or chart": "drawing",
     "comments": "comments",
-    "pivot table": "pivotTable",
     "printer settings": "printerSettings",
 }
+
+# What only the workbooks of real programs show; all else is in the made ones too.
+SEEN_IN_REAL = {
+    "calculation chain",
+    "external links",
+    "hidden sheet",
+    "locked structure",
+    "stored or described after the data",
+    "stored without compression",
+    "rich values",
+    "compatibility alternatives",
+    "pivot table",
+    "printer settings",
+    "outlined columns",
+}
+SEEN_IN_MADE = {
+    *_BOOK,
+    *_SHEET,
+    *_TEXT,
+    *_RELATED,
+    "table on the sheet",
+    "table with totals",
+    "table without header",
+    "table grown",
+    "table with totals grown",
+    "table left as it was",
+} - SEEN_IN_REAL
