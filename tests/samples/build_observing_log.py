@@ -6,7 +6,6 @@ Run from the top of the project: python -m tests.samples.build_observing_log
 from __future__ import annotations
 
 import datetime
-import re
 import tempfile
 from pathlib import Path
 
@@ -16,12 +15,12 @@ from xlsxwriter.workbook import Workbook
 from tests.samples import log_sheet, summary_sheet, wide_field_sheet
 from tests.samples.looks import Looks
 from tests.samples.programme import CLASSES, HERE, night_log, wide_field
-from tests.workbook_tools.repack import part, repack, swapped
+from tests.samples.saved_by_hand import as_saved_by_hand
+from tests.workbook_tools.repack import repack
 
 SAMPLE = HERE.parents[1] / "sample_sheets" / "observing_log.xlsx"
 BUILT_WITH = "3.3.1"  # the XlsxWriter that made the committed file
 LISTS = "Lists"
-_NUMBER = re.compile(rb"<v>(-?[0-9.]+(?:E[-+]?[0-9]+)?)</v>")
 LAST_EDIT = datetime.datetime(2026, 11, 9, 10, 42)
 
 
@@ -40,26 +39,7 @@ def build(path: Path) -> None:
         _write_lists(book, looks)
         _define_names(book, len(rows))
         book.close()
-        repack(raw, path, _as_saved_by_hand(raw, len(book.worksheets())))
-
-
-def _as_saved_by_hand(raw: Path, sheets: int) -> dict[str, bytes | None]:
-    """The parts that a spreadsheet program writes otherwise than XlsxWriter."""
-    workbook = "xl/workbook.xml"
-    # A log that people save does not order the next program to recalculate it.
-    parts: dict[str, bytes | None] = {
-        workbook: swapped(part(raw, workbook), ' fullCalcOnLoad="1"', "")
-    }
-    for number in range(1, sheets + 1):
-        name = f"xl/worksheets/sheet{number}.xml"
-        parts[name] = _NUMBER.sub(_with_seventeen_digits, part(raw, name))
-    return parts
-
-
-def _with_seventeen_digits(value: re.Match[bytes]) -> bytes:
-    """Excel keeps 15 digits of what is typed and stores the nearest double with 17."""
-    typed = float(f"{float(value[1]):.15g}")
-    return b"<v>%s</v>" % f"{typed:.17G}".encode()
+        repack(raw, path, as_saved_by_hand(raw, len(book.worksheets())))
 
 
 def _write_lists(book: Workbook, looks: Looks) -> None:
