@@ -56,7 +56,7 @@ class PlainCell(NamedTuple):
     """A cell as a plain search finds it.
 
     Attributes:
-        row, start: its row number, and the offset of the element.
+        row, start: number of its row, and offset of the element.
         style: number of its format; 0 where it has none.
         number: of a plain number; infinite where it is larger than any to be reckoned with.
         text: the number of a shared text.
@@ -210,8 +210,7 @@ class SheetScan:
     def plain_cells(self, letters: bytes) -> Iterator[PlainCell]:
         """Yield each cell of a column, top down; for regular cells only.
 
-        What is neither a plain number nor a shared text, such as a formula, is to be looked at
-        more closely.
+        What is neither a plain number nor a shared text, as a formula, needs a closer look.
         """
         v, close = self._prefix + b"v", re.escape(self._closing)
         number = rb'(?: t="n")?><%b>(-?\d+(?:\.\d+)?(?:[eE][-+]?\d+)?)' % v

@@ -10,13 +10,20 @@ MOST_LINES_OF_A_MODULE = 400
 MOST_LINES_OF_A_FUNCTION = 60
 MOST_PARAMETERS = 6
 
-# A list of options, one after the other. Remove what no longer exceeds the limit.
-LONGER = {"workbook_tools.command._parser": 66}
+# Options, one after the other, and a call whose documentation is most of it. Remove what no longer
+# exceeds the limit.
+LONGER = {
+    "epochconv.conversion_with_error.convert_with_error": 67,
+    "workbook_tools.command._add_choices": 77,
+}
 # They take one by one what people choose one by one.
 MORE_PARAMETERS = {
     "epochconv.conversion.convert": 7,
+    "epochconv.conversion_with_error.convert_with_error": 10,
+    "epochconv.conversion_with_error.convert_with_linear_error": 8,
+    "epochconv.intervals.image": 7,
+    "epochconv.slopes.tangent": 7,
     "epochconv.through_x.convert_values": 7,
-    "workbook_tools.filling.fill": 13,
     "workbook_tools.filling.write_columns": 7,
 }
 EVERY_MODULE = pytest.mark.parametrize("module", modules(), ids=lambda module: module.name)
