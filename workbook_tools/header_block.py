@@ -10,7 +10,7 @@ from epochconv.typed_text import read_typed
 from workbook_tools.cell_address import Range
 from workbook_tools.column_meanings import Role
 from workbook_tools.header_rows import holds_units
-from workbook_tools.heading_units import read_unit
+from workbook_tools.heading_units import is_like_a_unit, read_unit
 from workbook_tools.heading_words import plain_line
 from workbook_tools.headings import lacks_unit, meaning_of
 from workbook_tools.sheet_scan import SheetScan
@@ -72,10 +72,9 @@ class HeaderFinder:
         names = self._row_of_names(index)
         texts = self._row_texts(names)
         rows: list[Mapping[int, str]] = [texts]
-        below = self._row_texts(names + 1) if self._follows(names) else {}
-        units = names + 1 if below and holds_units(below) else None
+        units = names + 1 if self._follows(names) and self._holds_units(names + 1) else None
         if units is not None:
-            rows.append(below)
+            rows.append(self._row_texts(units))
         above = self._groups(names - 1, texts) if names and self._follows(names - 1) else {}
         if above:
             rows.insert(0, above)
@@ -86,6 +85,19 @@ class HeaderFinder:
         numbers = self._scan.numbers
         return index + 1 < len(numbers) and numbers[index + 1] == numbers[index] + 1
 
+    def _holds_units(self, index: int) -> bool:
+        """Tell whether a row is one of units, and not the first of a log that holds some too."""
+        texts = self._row_texts(index)
+        if not texts or not holds_units(texts):
+            return False
+        starts_with_digit = any(text.strip()[0].isdigit() for text in texts.values())
+        if starts_with_digit and not all(is_like_a_unit(plain_line(t)) for t in texts.values()):
+            return False
+        scan = self._scan
+        others = (c for c in scan.cells(index) if c.column not in texts and not scan.is_empty(c))
+        # A pure number may have the unit 1.
+        return all((scan.value_text(cell) or "1").strip() in ("", "1") for cell in others)
+
     def _row_of_names(self, index: int) -> int:
         """Return the row of names where the row with most headings is that of groups above it."""
         if not self._follows(index):
@@ -95,7 +107,7 @@ class HeaderFinder:
             self._row_texts(index),
             self._row_texts(index + 1),
         )
-        if not below or holds_units(below):
+        if not below or self._holds_units(index + 1):
             return index
         areas = [a for a in map(self._area_in(row), texts) if a is not None]
         if any(area.last_row > row for area in areas):

@@ -226,7 +226,19 @@ def test_a_column_is_called_by_name_and_unit_wherever_the_unit_stands(text: str)
     rows = grid(["Object", "z", "Age", "D_C"], [None, "---", "Gyr", "Mpc"], ["a", 1.0])
     made = plan_sheet(reading_of(rows), request(only=(text,)), None)
     assert [one.column for one in made.columns] == [3]
-    if text != "Age":
+    if text == "Age [Gyr]":
         made = plan_sheet(reading_of(rows), request(add=(text,)), None)
         assert [one.column for one in made.columns] == [3, 4]
         assert "is there already (column C)" in made.notes[0]
+
+
+@pytest.mark.parametrize("first", [["a", 1.0, "100 Myr"], ["a", "1.5", "100 Myr"]])
+def test_a_value_with_a_unit_in_the_first_row_makes_it_none_of_units(first: list[Value]) -> None:
+    reading = read(["Object", "z", "Age [Gyr]"], first, ["b", 2.0])
+    assert block(reading) == (1, 1, 2)
+    assert meant(reading) == {2: "redshift", 3: "age Gyr"}
+
+
+def test_a_pure_number_may_have_the_unit_1() -> None:
+    reading = read(["Object", "z", "Age"], [None, 1, "Gyr"], ["a", 1.0])
+    assert block(reading) == (1, 2, 3)
