@@ -19,6 +19,7 @@ LONGER = {
 # They take one by one what people choose one by one.
 MORE_PARAMETERS = {
     "epochconv.conversion.convert": 7,
+    "epochconv.conversion_with_error._image": 8,
     "epochconv.conversion_with_error.convert_with_error": 10,
     "epochconv.conversion_with_error.convert_with_linear_error": 8,
     "epochconv.intervals.image": 7,
