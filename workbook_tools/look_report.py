@@ -11,6 +11,8 @@ from workbook_tools.looking import CellKinds, Look, SeenColumn, SeenSheet
 from workbook_tools.parts import SheetKind, SheetState
 from workbook_tools.report import sheet_data, sheet_lines
 
+_ONE = {"numbers": "number", "limits": "limit", "with errors": "with an error"}
+
 
 def look_text(seen: Look) -> str:
     """Return what was seen as text."""
@@ -85,7 +87,8 @@ def _meaning_text(meaning: Meaning) -> str:
     said = [heading.frame, heading.method]
     words = "".join(f", {word}" for word in said if word)
     unit = f" in {heading.unit.symbol}" if heading.unit.symbol else ""
-    scaled = f", times h to the power {-heading.h_power}" if heading.h_power else ""
+    # h^-1 is the only power that a heading may have.
+    scaled = ", times h" if heading.h_power else ""
     return f"{heading.measure.name}{unit}{scaled}{words}{why}"
 
 
@@ -94,7 +97,8 @@ def _cell_lines(cells: CellKinds) -> list[str]:
     for kind, count in cells.counts.items():
         words = f": {', '.join(f'{w} ({n})' for w, n in cells.words.items())}"
         said = words if kind == "no value" else ""
-        parts.append(f"{count} {kind} (first {cells.first[kind]}{said})")
+        named = _ONE.get(kind, kind) if count == 1 else kind
+        parts.append(f"{count} {named} (first {cells.first[kind]}{said})")
     lines = [", ".join(parts)] if parts else []
     for verb, grouped in (("left", cells.left), ("read", cells.remarks)):
         lines += [
