@@ -111,7 +111,8 @@ def test_slope_is_that_of_the_measure(
     """Against central differences in x, whose error falls with the square of the step."""
     history = request.getfixturevalue(universe)
     x = np.array([0.01, 0.3, 0.9, 1.7, 4.0, 12.0])
-    step = 1e-5
+    # Shorter near today, where a modulus bends as fast as 1/x².
+    step = 1e-4 * np.minimum(x, 0.1)
     assert measure.slope_at is not None
     ahead = measure.value_at(Moment(x=x + step), history)
     behind = measure.value_at(Moment(x=x - step), history)

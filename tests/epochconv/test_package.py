@@ -7,7 +7,15 @@ import re
 import pytest
 
 import epochconv
-from epochconv import conversion, epochs, errors, history, published
+from epochconv import (
+    conversion,
+    conversion_with_error,
+    epochs,
+    errors,
+    history,
+    published,
+    with_error,
+)
 from tests.epochconv.fresh_interpreter import ROOT
 
 
@@ -17,10 +25,14 @@ def test_public_names_are_these() -> None:
         "Epoch": epochs.Epoch,
         "EpochconvError": errors.EpochconvError,
         "ExpansionHistory": history.ExpansionHistory,
+        "LinearError": conversion_with_error.LinearError,
         "OutOfRangeError": errors.OutOfRangeError,
         "ParameterSet": published.ParameterSet,
         "TwoAnswersError": errors.TwoAnswersError,
+        "WithError": with_error.WithError,
         "convert": conversion.convert,
+        "convert_with_error": conversion_with_error.convert_with_error,
+        "convert_with_linear_error": conversion_with_error.convert_with_linear_error,
         "epoch": epochs.epoch,
         "parameter_set": published.parameter_set,
         "parameter_sets": published.parameter_sets,
