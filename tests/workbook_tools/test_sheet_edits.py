@@ -10,7 +10,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from hypothesis.strategies import DataObject
 
-from tests.workbook_tools.differences import part_differences
+from tests.workbook_tools.differences import part_change
 from tests.workbook_tools.odd_sheets import LAST_COLUMN, LAST_ROW, odd_sheets, view_of
 from tests.workbook_tools.rules.package import text_of
 from tests.workbook_tools.rules.sheet_view import SheetView, letters
@@ -239,7 +239,9 @@ def test_random_cells_in_random_sheets(xml: bytes, data: DataObject) -> None:
         (row, one.column): v for one in new for row, v in zip(one.rows, one.numbers, strict=True)
     }
     headings = {(one.heading[0], one.column) for one in new if one.heading}
-    seen = {cell for difference in part_differences(xml, result) for cell in difference.cells}
+    change = part_change(xml, result)
+    assert change.undone == xml
+    seen = {cell for difference in change.differences for cell in difference.cells}
     assert seen == expected.keys() | headings
     after = view_of(result)
     _check_order(after, seen)
@@ -256,7 +258,7 @@ def test_random_cells_in_random_sheets(xml: bytes, data: DataObject) -> None:
 @st.composite
 def _new_cells(draw: st.DrawFn, view: SheetView) -> list[NewCells]:
     """Columns of new cells where there is room for them."""
-    # `part_differences` takes `<c><v/></c>` for something, so such cells stay as they are here
+    # `part_change` takes `<c><v/></c>` for something, so such cells stay as they are here
     taken = {place for place, cell in view.by_position.items() if len(cell.element)}
     new = []
     columns = st.integers(1, 2 * LAST_COLUMN + 2)
