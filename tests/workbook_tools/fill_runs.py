@@ -47,7 +47,8 @@ class Run:
         column: the source of a fill by letters; None where given numbers were put in.
         sheet: the sheet that was filled.
         refusal: why it was refused, or ''.
-        old, new: cells before and after, by sheet.
+        old, new: cells before and after, by sheet; formulas as their text.
+        results: cells before, by sheet; formulas as their stored results.
     """
 
     before: Path
@@ -57,6 +58,7 @@ class Run:
     refusal: str = ""
     result: FillResult | None = None
     old: dict[str, Values] = field(default_factory=dict)
+    results: dict[str, Values] = field(default_factory=dict)
     new: dict[str, Values] = field(default_factory=dict)
 
     @property
@@ -73,7 +75,7 @@ class Run:
 
 
 def number_column(path: Path, values: dict[str, Values]) -> Column | None:
-    """The column of a workbook that has the most typed numbers, two at least, if any.
+    """The column of a workbook with the most typed numbers that can be redshifts, if any has one.
 
     Numbers of a pivot table do not count: nobody types them, and programs lay them out anew.
     """
@@ -82,9 +84,9 @@ def number_column(path: Path, values: dict[str, Values]) -> Column | None:
     for sheet, cells in values.items():
         for (row, column), value in cells.items():
             inside = any(extent.holds(row, column) for extent in pivots.get(sheet, ()))
-            counts[sheet, column] += _is_number(value) and not inside
+            counts[sheet, column] += _is_number(value) and 0 <= value <= 1e9 and not inside
     best, count = counts.most_common(1)[0] if counts else (("", 0), 0)
-    return Column(*best) if count >= 2 else None
+    return Column(*best) if count else None
 
 
 def _pivots(path: Path) -> dict[str, list[Box]]:
@@ -103,9 +105,11 @@ def _is_number(value: object) -> TypeGuard[float]:
 
 def run(path: Path, folder: Path) -> Run:
     """Fill a workbook into a new file in `folder`: by letters if it can be, else given numbers."""
-    old = _old_values(path)
+    old, results = _old_values(path), _old_values(path, results=True)
     column = number_column(path, old)
-    return _carried_out(Run(path, _free(folder, path), column, _sheet(path, old, column), old=old))
+    made = Run(path, _free(folder, path), column, _sheet(path, old, column))
+    made.old, made.results = old, results
+    return _carried_out(made)
 
 
 def run_given(path: Path, folder: Path) -> list[Run]:
@@ -119,9 +123,9 @@ def _free(folder: Path, path: Path) -> Path:
     return folder / f"{number:04} {path.name}"
 
 
-def _old_values(path: Path) -> dict[str, Values]:
+def _old_values(path: Path, *, results: bool = False) -> dict[str, Values]:
     try:
-        return cell_values(path)
+        return cell_values(path, results=results)
     except Exception:  # openpyxl has no error of its own for what it cannot load
         return {}
 
@@ -194,7 +198,7 @@ def _wrong_ages(made: Run, cells: Values) -> Iterator[str]:
     assert made.result is not None
     source = {
         row: value
-        for (row, column), value in cell_values(made.before, results=True)[made.sheet].items()
+        for (row, column), value in made.results[made.sheet].items()
         if column == made.column.column
     }
     headings = [place for place, value in cells.items() if isinstance(value, str)]

@@ -10,11 +10,12 @@ from tests.workbook_tools.small_sheets import cell, reading_of, row, scan_of
 from workbook_tools.cell_looks import CellLooks
 from workbook_tools.styles import StyleSheet
 
-GENERAL, TWO_DIGITS, COLOURED, TEXT, DATE, WRAPPED = range(6)
-STYLES = f"""<styleSheet xmlns="{MAIN}"><cellXfs count="6">
+GENERAL, TWO_DIGITS, COLOURED, TEXT, DATE, WRAPPED, THOUSANDS = range(7)
+STYLES = f"""<styleSheet xmlns="{MAIN}"><cellXfs count="7">
 <xf numFmtId="0" fontId="0"/><xf numFmtId="2" fontId="1"/><xf numFmtId="0" fontId="2" fillId="2"/>
 <xf numFmtId="49" fontId="3"/><xf numFmtId="14" fontId="4"/>
-<xf numFmtId="0" fontId="5"><alignment wrapText="1"/></xf></cellXfs></styleSheet>""".encode()
+<xf numFmtId="0" fontId="5"><alignment wrapText="1"/></xf>
+<xf numFmtId="4" fontId="6"/></cellXfs></styleSheet>""".encode()
 HEADER = row(1, "z", "Age [Gyr]")
 
 
@@ -70,6 +71,12 @@ def test_the_look_of_the_whole_column_comes_next() -> None:
     columns = '<col min="2" max="2" style="1"/>'
     assert look(COLOURED, [None], columns=columns) == [("1", "0.00")]
     assert look(COLOURED, [None], typed=WRAPPED, columns=columns) == [("5", "0.00")]
+
+
+def test_cells_without_a_format_take_that_of_the_others_in_their_column() -> None:
+    columns = '<col min="2" max="2" style="5"/>'
+    expected = [("2", "#,##0.00"), ("6", "#,##0.00"), ("5", "#,##0.00")]
+    assert look(TWO_DIGITS, [COLOURED, THOUSANDS, None], columns=columns) == expected
 
 
 @pytest.mark.parametrize("style", [TEXT, DATE])

@@ -71,7 +71,7 @@ def test_a_table_without_a_filter_grows_too(path: Path) -> None:
 
 
 def test_a_row_of_totals_gets_nothing(tmp_path: Path) -> None:
-    path = make("tables.xlsx", tmp_path)
+    path = make("table with totals.xlsx", tmp_path)
     before = cells(path)
     result = fill(path, add=["Age [Gyr]"], sheet="Log", now=NOW)
     assert not new_problems(dated_copies(path)[0], path)

@@ -226,7 +226,8 @@ def test_every_made_workbook_is_filled_and_whole(tmp_path: Path, name: str) -> N
     path = make(name, tmp_path)
     sheet = next(iter(cells_of_first(path)))
     before = cells(path, sheet)
-    result = fill(path, sheet=sheet, add=["Age [Gyr]"], now=NOW)
+    source = {"source": "B:B", "source_measure": "redshift"}
+    result = fill(path, sheet=sheet, add=["Age [Gyr]"], now=NOW, **source)
     assert result.kept is not None
     assert result.kept.suffix == path.suffix
     comparison = compare(result.kept, path)

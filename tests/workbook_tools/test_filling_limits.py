@@ -178,9 +178,3 @@ def test_a_limit_at_which_a_measure_does_not_exist_is_left(path: Path) -> None:
     result, new = filled(path, [["z", "µ [mag]", "D_C [Mpc]"], [">0"], [1.0]])
     assert new["C2"] == ">0"
     assert ("B2", "distance modulus does not exist at redshift 0", "") in result.plans[0].left
-
-
-def test_a_text_limit_looks_like_its_column(path: Path) -> None:
-    """The style of the row's source; a number format changes nothing about a text."""
-    _, new = filled(path, [["z", "Age [Gyr]"], [">6"], [1.0, 5.84]])
-    assert new == {"B2": "<0.927"}

@@ -86,6 +86,7 @@ def test_a_source_is_looked_for_on_every_sheet(path: Path) -> None:
     write_log(path, more={"Spring": SPRING})
     result = fill(path, source="redshift")
     assert [plan.reading.sheet.name for plan in result.plans] == ["Spring"]
+    assert [plan.reading.sheet.name for plan in fill(path, source="z").plans] == ["Log"]
 
 
 def test_one_sheet_that_cannot_be_filled_stops_them_all(path: Path) -> None:

@@ -8,7 +8,9 @@ import pytest
 from xlsxwriter.workbook import Workbook
 from xlsxwriter.worksheet import Worksheet
 
+from tests.workbook_tools.loose_parts import MAIN, relations
 from tests.workbook_tools.made_workbooks import make
+from tests.workbook_tools.repack import repack
 from tests.workbook_tools.small_logs import SHEET, WORKBOOK, with_parts, write_log
 from tests.workbook_tools.small_sheets import request
 from workbook_tools.errors import Refusal, UsageError
@@ -51,7 +53,7 @@ def test_a_sheet_without_cells_is_refused(log: OpenWorkbook) -> None:
 
 
 def test_texts_dates_and_tables_are_those_of_the_workbook(tmp_path: Path) -> None:
-    workbook = OpenWorkbook(make("tables.xlsx", tmp_path))
+    workbook = OpenWorkbook(make("table with totals.xlsx", tmp_path))
     reading = workbook.reading(workbook.sheets("Log")[0], request())
     assert reading.texts[1] == "Object"
     assert [table.name for table in reading.tables] == ["Log"]
@@ -86,6 +88,19 @@ def test_a_part_that_is_held_is_not_read_again(log: OpenWorkbook) -> None:
     found = log.find(SHEET.upper())
     assert found is not None
     assert found.name == SHEET
+
+
+def test_pivot_tables_are_kept_free(tmp_path: Path) -> None:
+    path = write_log(tmp_path / "log.xlsx")
+    link = relations(("rId1", "pivotTable", "../pivotTables/pivotTable1.xml"))
+    pivot = f'<pivotTableDefinition xmlns="{MAIN}"><location ref="D1:E9"/></pivotTableDefinition>'
+    parts = {
+        "xl/worksheets/_rels/sheet1.xml.rels": link.encode(),
+        "xl/pivotTables/pivotTable1.xml": pivot.encode(),
+    }
+    workbook = OpenWorkbook(repack(path, path, parts))
+    reading = workbook.reading(workbook.sheets(None)[0], None)
+    assert [one.a1 for one in reading.blocked] == ["D1:E9"]
 
 
 @pytest.mark.parametrize(("flag", "protected"), [("1", True), ("true", True), ("0", False)])

@@ -80,6 +80,17 @@ def test_one_cell_is_called_one(tmp_path: Path) -> None:
     assert "  C 'Age [Gyr]': 1 cell filled from B 'z'" in text_report(result).splitlines()
 
 
+def test_a_column_that_got_nothing_is_not_listed(tmp_path: Path) -> None:
+    rows: Grid = [["z", "Age [Gyr]"], [-0.1], [-0.2], [-0.3]]
+    lines = text_report(fill(write_log(tmp_path / "log.xlsx", rows))).splitlines()
+    assert lines[:3] == [
+        "sheet 'Log'",
+        "  left 3: a negative redshift is a neighbour's peculiar motion towards us and no epoch"
+        " (A2, A3, A4)",
+        "nothing was waiting to be filled",
+    ]
+
+
 def test_a_new_column_is_called_new(tmp_path: Path) -> None:
     result = fill(write_log(tmp_path / "log.xlsx", BARE), add=["Age [Gyr]"], now=NOW)
     assert "  new column C 'Age [Gyr]': 3 cells filled from B 'z'" in text_report(result)
