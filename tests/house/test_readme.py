@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import os
 import re
 import shutil
 from collections.abc import Sequence
@@ -51,8 +52,8 @@ def test_the_first_command_prints_what_is_shown(
     shutil.copytree(SAMPLES, tmp_path / "sample_sheets")
     monkeypatch.chdir(tmp_path)
     assert main(command.split()) == 3
-    printed = capsys.readouterr().out.replace(f"{tmp_path.resolve()}/", "").splitlines()
-    assert_shows(blocks("text")[0].splitlines(), printed)
+    printed = capsys.readouterr().out.replace(f"{tmp_path.resolve()}{os.sep}", "")
+    assert_shows(blocks("text")[0].splitlines(), printed.replace(os.sep, "/").splitlines())
 
 
 def test_a_look_prints_what_is_shown(
