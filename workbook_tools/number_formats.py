@@ -48,15 +48,16 @@ def format_for(values: Sequence[float], source_digits: int) -> str:
 def shown_step(value: float, code: str) -> float:
     """Return half a unit of the last digit that a cell shows of a number: what it can be off by.
 
-    With a fixed or scientific format that is its last place. Otherwise it is the last digit of the
-    number itself, of which the General format shows ten.
+    With a fixed or scientific format that is its last place. Otherwise it is the last decimal of
+    the number itself, of whose digits the General format shows ten; a whole number is shown to its
+    units.
     """
     plain = _AROUND.sub("", code).partition(";")[0].strip()
     fixed, scientific = _FIXED.fullmatch(plain), _SCIENTIFIC.fullmatch(plain)
     if fixed is not None:
         return 0.5 * 10.0 ** -(len(fixed[1] or "") + 2 * len(fixed[2]))
     exponent = math.floor(math.log10(abs(value))) if value else 0
-    digits = min(significant_digits(value), _GENERAL_DIGITS)
+    digits = min(max(significant_digits(value), exponent + 1), _GENERAL_DIGITS)
     if scientific is not None:
         digits = 1 + len(scientific[1] or "")
     return 0.5 * 10.0 ** (exponent - digits + 1)

@@ -1,4 +1,4 @@
-"""Rows that are no rows of the log: hidden ones, merged cells, totals, headings that are repeated.
+"""Rows that are none of the log: hidden by hand, merged, totals, or headings that are repeated.
 
 They are passed over, counted and named. A line of totals is known by its formula, or by the label
 with which it begins.
@@ -15,7 +15,7 @@ from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.sheet_scan import attributes_of
 from workbook_tools.typed_cells import EMPTY, SUMS_UP, ColumnCells
 
-_HIDDEN = "a hidden row"
+_HIDDEN = "a row hidden by hand"
 _MERGED = "merged cells"
 _TOTALS = "a line of totals"
 _REPEATED = "repeated headings"
@@ -50,6 +50,7 @@ def rows_passed_over(reading: SheetReading, cells: ColumnCells, heading: Heading
 
 
 def _hidden(reading: SheetReading) -> list[int]:
+    """Return the rows that somebody hid; one that a filter hides is only out of view."""
     scan = reading.scan
     if scan.plain.find(b"hidden", scan.data.start_tag_end, scan.data.end_tag_start) < 0:
         return []
@@ -58,6 +59,7 @@ def _hidden(reading: SheetReading) -> list[int]:
         for position, index in enumerate(reading.rows)
         if attributes_of(scan.plain[scan.starts[index] : scan.tag_ends[index]]).get("hidden")
         in (b"1", b"true")
+        and not any(a.first_row <= scan.numbers[index] <= a.last_row for a in reading.filtered)
     ]
 
 

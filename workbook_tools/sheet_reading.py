@@ -33,6 +33,7 @@ class SheetReading:
     Attributes:
         sheet, scan, tables: what it was read from.
         merged: the merged cells.
+        filtered: rectangles whose rows a filter may hide.
         blocked: rectangles into which nothing may be written: merged cells, array formulas and
             data tables, pivot tables.
         header: the rows of headings, None where none were found.
@@ -60,6 +61,7 @@ class SheetReading:
         self.scan = scan
         self.tables = tables
         self.merged = _merged(scan)
+        self.filtered = [*_filtered(scan), *(table.ref for table in tables if table.filtered)]
         self.blocked = [*self.merged, *_arrays(scan), *pivots]
         self._headers = HeaderFinder(scan, self._row_texts, self.merged)
         self._rules = rules
@@ -249,6 +251,15 @@ class SheetReading:
         if last is not None:
             stop = next((i for i in range(start, stop) if self.scan.numbers[i] > last), stop)
         self.rows = range(start, stop)
+
+
+def _filtered(scan: SheetScan) -> list[Range]:
+    """Return the reach of the sheet's own filter where it hides rows."""
+    return [
+        range_in(one.attributes.get("ref"), scan.part)
+        for one in scan.outline.find_all("autoFilter")
+        if any(True for _ in one.find_all("filterColumn"))
+    ]
 
 
 def _merged(scan: SheetScan) -> list[Range]:

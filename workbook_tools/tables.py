@@ -42,6 +42,7 @@ class Table:
         columns: names from left to right.
         growable: whether columns may be added.
         reason: why not; empty where they may.
+        filtered: whether its filter hides rows.
     """
 
     part: str
@@ -53,6 +54,7 @@ class Table:
     columns: tuple[str, ...]
     growable: bool
     reason: str
+    filtered: bool = False
 
     @property
     def data(self) -> Range:
@@ -153,6 +155,7 @@ def _table(root: Element, part: str) -> Table:
         columns=tuple(decoded(column.attributes.get("name", "")) for column in columns),
         growable=not reason,
         reason=reason,
+        filtered=any(list(one.find_all("filterColumn")) for one in root.find_all("autoFilter")),
     )
 
 
