@@ -21,6 +21,7 @@ from workbook_tools.errors import Refusal
 from workbook_tools.number_formats import significant_digits
 from workbook_tools.sheet_edits import NewCells
 from workbook_tools.sheet_plan import FilledColumn, NamedCell, SheetPlan
+from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import StyleSheet
 from workbook_tools.typed_cells import EMPTY, LEFT, NUMBER, WHITE, WORD, ColumnCells
 
@@ -33,9 +34,6 @@ _HOLDS = {
     Role.LOWER_ERROR: "lower errors",
     Role.LIMIT_FLAG: "limit signs",
 }
-LIMIT_FLAG_OF = "limit flag of {}"
-"""Heading of a column of signs, for the name of the column that it belongs to."""
-
 _LIMIT_DIGITS = (3, 5)
 # Nobody types more of them; a stored 14.199999999999999 was 14.2.
 _TYPED_DIGITS = 12
@@ -231,7 +229,7 @@ class ColumnFiller:
         """Leave limits whose sign would have no place: they never become plain numbers."""
         if target is None or self.reading.companion(target.column, Role.LIMIT_FLAG) is not None:
             return
-        flag = LIMIT_FLAG_OF.format(heading.name)
+        flag = flag_heading(self.reading, heading)
         reason = f"a limit, whose sign needs a column headed {flag!r}"
         self._leave(dict.fromkeys(answers.limits, reason), blank, target.column)
         blank[list(answers.limits)] = False
@@ -335,6 +333,13 @@ def _as_typed(text: str) -> str:
     line = " ".join(text.split())
     number = plain_number(line) if len(line) > _TYPED_DIGITS else None
     return line if number is None else f"{number:.6g}"
+
+
+def flag_heading(reading: SheetReading, heading: Heading) -> str:
+    """Return the heading of a column with the signs of another's limits."""
+    others = (one for one in reading.headings.values() if not one.same_kind(heading))
+    unit = f" [{heading.unit_text}]" if any(one.name == heading.name for one in others) else ""
+    return f"limit flag of {heading.name}{unit}"
 
 
 def _sizes_for(role: Role, answers: Answers) -> FloatArray:

@@ -129,6 +129,12 @@ def _same_measure(base: str, owners: Sequence[Column]) -> list[Column]:
 
 
 def _tied(one: Companion, found: Sequence[Column]) -> Meaning:
+    part = one.part
+    if len(found) > 1 and part is not None and part.unit is not None:
+        # A unit tells columns of one name apart.
+        units = [(c, c.meaning.heading) for c in found]
+        fitting = [c for c, h in units if h and (h.unit, h.h_power) == (part.unit, part.h_power)]
+        found = fitting or found
     if len(found) > 1:
         listed = " and ".join(f"{c.name!r} ({column_letters(c.number)})" for c in found)
         return unclear(f"may belong to {listed}; name one of them in full")

@@ -7,7 +7,7 @@ from collections.abc import Sequence
 import numpy as np
 
 from workbook_tools.cell_address import column_letters
-from workbook_tools.column_filler import LIMIT_FLAG_OF, ColumnFiller
+from workbook_tools.column_filler import ColumnFiller, flag_heading
 from workbook_tools.column_meanings import ERRORS, Heading, Role
 from workbook_tools.column_widths import hidden_columns
 from workbook_tools.right_edge import right_edge
@@ -38,8 +38,11 @@ def append_columns(
         wanted.append((Role.VALUE, heading, heading.name, heading.unit_text))
         wanted += _errors_of(heading, tuple(_SIDES)) if carries else []
         if filler.source.flagged and filler.answers(heading).limits:
-            wanted.append((Role.LIMIT_FLAG, heading, LIMIT_FLAG_OF.format(heading.name), ""))
+            wanted.append((Role.LIMIT_FLAG, heading, flag_heading(filler.reading, heading), ""))
     for column in existing if carries else ():
+        (held,) = reading.columns([column])
+        if held.errors:  # which stand with the values
+            continue
         has = {role for role in ERRORS if reading.companion(column, role) is not None}
         lacking = () if Role.ERROR in has else tuple(one for one in _SIDES if one not in has)
         wanted += _errors_of(reading.headings.get(column), lacking)

@@ -14,7 +14,7 @@ from workbook_tools import source_choice
 from workbook_tools.answers import Moments
 from workbook_tools.cell_address import column_letters
 from workbook_tools.column_filler import ColumnFiller
-from workbook_tools.column_meanings import Heading
+from workbook_tools.column_meanings import ERRORS, Heading
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import same_heading
 from workbook_tools.new_columns import append_columns
@@ -73,7 +73,8 @@ def _about_errors(plan: SheetPlan, moments: Moments, request: Request) -> list[s
         return moments.error_notes()
     if not moments.has_errors:
         return [f"column {column} gives no errors to carry"] if request.with_errors else []
-    if request.with_errors or not plan.changed:
+    companions = (plan.reading.companion(c.column, role) for c in plan.columns for role in ERRORS)
+    if request.with_errors or not plan.changed or any(companions):
         return []
     what = (
         "what was asked to count in errors" if moments.exact else f"the errors of column {column}"

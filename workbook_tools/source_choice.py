@@ -122,7 +122,9 @@ def waited_for(reading: SheetReading, sources: Sequence[int], with_errors: bool)
                 )
                 if any(cells.is_blank(position) for position in wanted):
                     found.add(source)
-            if with_errors and held.has_errors and not any(companions[role] for role in ERRORS):
+            (own,) = reading.columns([owner])
+            stated = own.errors or any(companions[role] for role in ERRORS)
+            if with_errors and held.has_errors and not stated:
                 found.add(source)
     return sorted(found)
 

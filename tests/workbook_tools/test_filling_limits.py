@@ -178,3 +178,14 @@ def test_a_limit_at_which_a_measure_does_not_exist_is_left(path: Path) -> None:
     result, new = filled(path, [["z", "µ [mag]", "D_C [Mpc]"], [">0"], [1.0]])
     assert new["C2"] == ">0"
     assert ("B2", "distance modulus does not exist at redshift 0", "") in result.plans[0].left
+
+
+def test_flags_of_columns_of_one_name_tell_their_units(path: Path) -> None:
+    rows: Grid = [["z", "l_z", "Age [Gyr]", "limit flag of Age [Gyr]"], [6.0, ">"], [1.0]]
+    result, new = filled(path, rows, add=["Age [Myr]"])
+    assert (new["D2"], new["E1"], new["F1"], new["F2"]) == (
+        *("<", "Age [Myr]"),
+        *("limit flag of Age [Myr]", "<"),
+    )
+    assert result.left == []
+    assert fill(path, add=["Age [Myr]"]).written is False
