@@ -237,8 +237,14 @@ class SheetReading:
         start = self.header.last + 1
         header = self.scan.numbers[self.header.names]
         columns = list(self.headings) or list(self.texts)
-        table = next((t for t in map(self.table_of, columns) if t is not None), None)
-        last = table.data.last_row if table is not None else None
+        tables = [t for t in map(self.table_of, columns) if t is not None]
+        # A table without a header row of its own may lie right below the headings.
+        tables += [
+            t
+            for t in self.tables
+            if not t.header_rows and t.ref.first_row == self.scan.numbers[self.header.last] + 1
+        ]
+        last = tables[0].data.last_row if tables else None
         if last is None:
             below = [
                 table.ref.first_row

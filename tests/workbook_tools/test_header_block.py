@@ -3,11 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from pathlib import Path
 
 import pytest
+from xlsxwriter.workbook import Workbook
+from xlsxwriter.worksheet import Worksheet
 
+from tests.workbook_tools.small_logs import write_log
 from tests.workbook_tools.small_sheets import Value, grid, reading_of, request, scan_of
 from workbook_tools.column_meanings import Role
+from workbook_tools.filling import fill
 from workbook_tools.plan import plan_sheet
 from workbook_tools.sheet_reading import SheetReading
 
@@ -242,3 +247,13 @@ def test_a_value_with_a_unit_in_the_first_row_makes_it_none_of_units(first: list
 def test_a_pure_number_may_have_the_unit_1() -> None:
     reading = read(["Object", "z", "Age"], [None, 1, "Gyr"], ["a", 1.0])
     assert block(reading) == (1, 2, 3)
+
+
+def test_a_table_without_headings_of_its_own_is_the_log_below_them(tmp_path: Path) -> None:
+    rows = [["Object", "z", "Age [Gyr]"], ["HBN 0001", 1.5, None], ["HBN 0002", 2.5, None]]
+
+    def dress(_book: Workbook, sheet: Worksheet) -> None:
+        sheet.add_table(1, 0, 2, 2, {"header_row": False})
+
+    log = write_log(tmp_path / "log.xlsx", rows, dress)
+    assert fill(log, output=tmp_path / "out.xlsx").filled == 2
