@@ -212,7 +212,7 @@ class Moments:
             in_redshift = _FLIPPED[sign] if falls else sign
             x, value = self.moment.x[position], values[position]
             beyond = in_redshift in _ABOVE
-            if np.any(turns > x) if beyond else np.any(turns < x):
+            if len(turns) and np.any(turns > x if beyond else turns < x):
                 reasons[position] = (
                     f"a limit beyond which {target.name} turns over, so it stands for none"
                 )

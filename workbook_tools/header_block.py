@@ -94,9 +94,9 @@ class HeaderFinder:
         if starts_with_digit and not all(is_like_a_unit(plain_line(t)) for t in texts.values()):
             return False
         scan = self._scan
-        others = (c for c in scan.cells(index) if c.column not in texts and not scan.is_empty(c))
+        numbers = (scan.value_text(cell) for cell in scan.cells(index) if cell.type == "n")
         # A pure number may have the unit 1.
-        return all((scan.value_text(cell) or "1").strip() in ("", "1") for cell in others)
+        return all(number is None or number.strip() in ("", "1") for number in numbers)
 
     def _row_of_names(self, index: int) -> int:
         """Return the row of names where the row with most headings is that of groups above it."""

@@ -81,11 +81,10 @@ def possible_sources(reading: SheetReading) -> list[int]:
     Two columns of one measure in one unit (redshifts by two methods) never fill each other.
     """
     columns = reading.columns(list(reading.headings))
-    filled = {
-        cells.column: _filled_rows(reading, cells)
-        for cells in columns
-        if cells.count(NUMBER) or cells.count(LIMIT)
-    }
+    held = [cells for cells in columns if cells.count(NUMBER) or cells.count(LIMIT)]
+    if len(held) < 2:
+        return [cells.column for cells in held]
+    filled = {cells.column: _filled_rows(reading, cells) for cells in held}
     return [
         column
         for column, rows in filled.items()

@@ -53,6 +53,7 @@ def test_one_row_of_headings() -> None:
         [None, "-", "(Gyr)", "(Mpc)"],
         ["", "---", "Gyr", "Mpc"],
         [None, "", "[Gyr]", "Mpc"],
+        [" ", 1, "Gyr", "Mpc"],
     ],
 )
 def test_units_may_stand_in_a_row_below_the_names(units: list[Value]) -> None:

@@ -266,7 +266,7 @@ def test_each_cell_comes_to_what_the_policy_says(filled: Filled, number: int) ->
 
 @pytest.mark.parametrize(
     ("row", "reason"),
-    [(HIDDEN, "a hidden row"), (MERGED, "merged cells"), (TOTAL, "a line of totals")],
+    [(HIDDEN, "a row hidden by hand"), (MERGED, "merged cells"), (TOTAL, "a line of totals")],
 )
 def test_rows_that_are_none_of_the_log_are_passed_over(
     filled: Filled, row: int, reason: str
