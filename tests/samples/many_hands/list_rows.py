@@ -208,7 +208,7 @@ PROGRAMS = [
 
 NEWEST = [
     Row("HBN 1446-14", 1.05, reads(1.05), age="ask KJ", by="OZ"),
-    Row("HBN 1452+09", 0.2581, no_row("a hidden row"), 0.0004, by="OZ", hidden=True),
+    Row("HBN 1452+09", 0.2581, no_row("a row hidden by hand"), 0.0004, by="OZ", hidden=True),
     Row("HBN 1508-37", 4.6, no_row("merged cells"), 0.2, by="OZ", kind="lensed galaxy"),
     Row("HBN 1508-37", None, NOTHING, by="OZ", kind="lensed galaxy", note="second night"),
 ]
