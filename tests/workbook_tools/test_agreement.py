@@ -72,7 +72,7 @@ def test_cells_that_disagree_are_named_with_what_belongs_there() -> None:
         " B4 holds 2.2 where 2.13908 belongs; B5 holds 1.4 where "
     )
     assert " more" not in text
-    assert text.endswith("nothing was filled; correct these cells, or fill another column")
+    assert text.endswith("correct these cells, or name the columns to fill with --only")
 
 
 def test_only_the_first_three_are_named() -> None:

@@ -116,7 +116,7 @@ def test_a_workbook_without_styles_has_none_to_give() -> None:
     reading = reading_of(header + row(2, 1.0))
     (redshifts,) = reading.columns([1])
     looks = CellLooks(reading, None, redshifts)
-    assert looks.of_heading(1) == 0
+    assert looks.of_heading(0, 1) == 0
     assert list(looks.of_numbers(2, np.array([0]), [5.84], None)) == [0]
     assert looks.code(7) == "General"
     assert not looks.wraps(7)

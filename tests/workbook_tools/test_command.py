@@ -56,10 +56,10 @@ def test_nothing_left_is_code_0(capsys: pytest.CaptureFixture[str], path: Path) 
 
 
 def test_something_left_is_code_3(capsys: pytest.CaptureFixture[str], path: Path) -> None:
-    write_log(path, [*LOG, ["fourth", ">6"]])
+    write_log(path, [*LOG, ["fourth", "2-3"]])
     code, out, err = run(capsys, "fill", path)
     assert (code, err) == (3, "")
-    assert "left 1: not read: >6 (B5)" in out
+    assert "left 1: not read: a range, not one value (B5 '2-3')" in out
     assert run(capsys, "fill", path)[0] == 3
 
 
@@ -228,7 +228,7 @@ def test_ctrl_c_is_no_traceback(
         raise KeyboardInterrupt
 
     before = path.read_bytes()
-    monkeypatch.setattr("workbook_tools.filling.plan_sheet", interrupted)
+    monkeypatch.setattr("workbook_tools.plan_of_workbook.plan_sheet", interrupted)
     assert run(capsys, "fill", path)[0] == 130
     assert path.read_bytes() == before
 

@@ -6,7 +6,7 @@ import pytest
 from hypothesis import given
 from hypothesis import strategies as st
 
-from workbook_tools.number_formats import format_for, shown_step, significant_digits
+from workbook_tools.number_formats import format_for, format_like, shown_step, significant_digits
 
 
 @pytest.mark.parametrize(
@@ -95,3 +95,11 @@ def test_the_middle_value_shows_three_digits_and_the_smallest_two(
 def test_half_a_unit_of_the_last_digit_shown(value: float, code: str, step: float) -> None:
     assert shown_step(value, code) == pytest.approx(step, rel=1e-12)
     assert shown_step(-value, code) == pytest.approx(step, rel=1e-12)
+
+
+@pytest.mark.parametrize(
+    ("typed", "code"),
+    [([5.21, 8.84, 10.53], "0.00"), ([12.0, 7.0], "0"), ([0.0012, 0.0123], "0.0000")],
+)
+def test_blanks_get_as_many_decimals_as_were_typed(typed: list[float], code: str) -> None:
+    assert format_like(typed) == code

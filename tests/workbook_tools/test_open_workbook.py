@@ -99,7 +99,7 @@ def test_pivot_tables_are_kept_free(tmp_path: Path) -> None:
         "xl/pivotTables/pivotTable1.xml": pivot.encode(),
     }
     workbook = OpenWorkbook(repack(path, path, parts))
-    reading = workbook.reading(workbook.sheets(None)[0], None)
+    reading = workbook.reading(workbook.sheets(None)[0], request())
     assert [one.a1 for one in reading.blocked] == ["D1:E9"]
 
 

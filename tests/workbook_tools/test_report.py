@@ -86,7 +86,7 @@ def test_a_column_that_got_nothing_is_not_listed(tmp_path: Path) -> None:
     assert lines[:3] == [
         "sheet 'Log'",
         "  left 3: a negative redshift is a neighbour's peculiar motion towards us and no epoch"
-        " (A2, A3, A4)",
+        " (A2 '-0.1', A3 '-0.2', A4 '-0.3')",
         "nothing was waiting to be filled",
     ]
 
