@@ -101,6 +101,9 @@ def _run(options: argparse.Namespace) -> int:
         except EpochconvError as error:
             where = f"line {number}: " if many else ""
             worst = max(worst, _complain(where + str(error), 1 if many else _code_of(error)))
+            if many:
+                # One answer for each question: who pastes them side by side must not slip a line.
+                print(_no_answer(number, error, options))
     return worst
 
 
@@ -136,6 +139,16 @@ def _answer(text: str, wanted: Any, history: ExpansionHistory, options: argparse
         answer["answer"] = {"measure": target.name, "value": result, "unit": unit.symbol}
         return json.dumps(answer, ensure_ascii=False, allow_nan=False)
     return with_unit(number_text(result, 10), unit.symbol)
+
+
+def _no_answer(line: int, error: EpochconvError, options: argparse.Namespace) -> str:
+    """Return what stands in the place of an answer among others."""
+    import json
+
+    if not options.json:
+        return "none"
+    answer = {"format": "epochconv answer 1", "line": line, "error": str(error)}
+    return json.dumps(answer, ensure_ascii=False, allow_nan=False)
 
 
 def _code_of(error: EpochconvError) -> int:

@@ -94,7 +94,7 @@ def disagreement(
     remedy = (
         f"it agrees with --parameters '{better}'"
         if better
-        else ("correct these cells, or fill another column")
+        else ("correct these cells, or name the columns to fill with --only")
     )
     return (
         f"column {heading.text!r} does not agree with {label_of(moments.history)}:"

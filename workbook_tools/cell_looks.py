@@ -9,12 +9,13 @@ import numpy as np
 from numpy.typing import NDArray
 
 from workbook_tools.column_widths import column_style
-from workbook_tools.number_formats import format_for, significant_digits
+from workbook_tools.number_formats import format_for, format_like, significant_digits
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.styles import GENERAL, StyleSheet
 from workbook_tools.typed_cells import LIMIT, NUMBER, ColumnCells
 
 _TEXT = "@"
+_LAST_TYPED = 100
 
 
 class CellLooks:
@@ -104,7 +105,8 @@ class CellLooks:
 
         An empty cell keeps its own style, a blank below filled ones takes that of the last of
         them, and the style of the whole column comes next. Without any of these a cell will look
-        like its row's source. The format is that of the column's other cells, if they have one.
+        like its row's source. The format is that of the column's other cells, if they have one,
+        else one with as many decimals as were typed there.
         """
         own = np.maximum(np.array(target.styles), 0)
         typed = np.flatnonzero(np.frombuffer(target.kinds, dtype=np.uint8) == NUMBER)
@@ -114,6 +116,8 @@ class CellLooks:
         used = [int(one) for one in np.unique(own[own > 0])]
         used += [fallback] if fallback else []
         fitting = [self.code(one) for one in used if self._shows_digits(one)]
+        if len(typed) and not fitting:
+            fitting = [format_like([target.numbers[p] for p in typed[-_LAST_TYPED:]])]
         return np.where(own > 0, own, fallback), fitting[-1] if fitting else code
 
     def _shows_digits(self, style: int) -> bool:

@@ -45,6 +45,16 @@ def format_for(values: Sequence[float], source_digits: int) -> str:
     return "0." + "0" * decimals if decimals else "0"
 
 
+def format_like(typed: Sequence[float]) -> str:
+    """Return a format with as many decimals as the typed numbers mostly have; finite, not empty."""
+    counts = sorted(
+        max(0, significant_digits(value) - 1 - (math.floor(math.log10(abs(value))) if value else 0))
+        for value in typed
+    )
+    decimals = min(counts[len(counts) // 2], 6)
+    return "0." + "0" * decimals if decimals else "0"
+
+
 def shown_step(value: float, code: str) -> float:
     """Return half a unit of the last digit that a cell shows of a number: what it can be off by.
 

@@ -148,7 +148,7 @@ def test_value_without_an_answer_is_told_and_ends_with_1(
         (["z"], "'z' is not understood"),
         ([""], "'' is not understood"),
         (["age = 1"], "'age = 1' has no unit; age needs one, such as 'age = 1 Gyr'"),
-        (["age = 1 gyr"], "'gyr' in ' 1 gyr' is not a unit that is known here (case matters)"),
+        (["age = 1 gyr"], "'gyr' in '1 gyr' is not a unit that is known here (case matters)"),
         (["age = 1 Mpc"], "Mpc does not fit age, which is a time; use yr, kyr, Myr, Gyr, d, s"),
         (["ag = 1 Gyr"], "'ag' is no measure known here. Did you mean 'age'?"),
         (["z = 1", "--to", "velocity"], "'velocity' is no measure known here"),
@@ -187,7 +187,7 @@ def test_bad_line_is_named_by_its_number_and_the_others_are_answered(
     given_lines(monkeypatch, "z = 1\n\nz = -1\nnonsense\nz = 3\n")
     assert main(["-", "--to", "a"]) == 1
     captured = capsys.readouterr()
-    assert captured.out.splitlines() == ["0.5", "0.25"]
+    assert captured.out.splitlines() == ["0.5", "none", "none", "0.25"]
     first, second = captured.err.splitlines()
     assert first.startswith("epochconv: line 3: redshift -1 is a neighbour's")
     assert second.startswith("epochconv: line 4: 'nonsense' is not understood")
@@ -263,3 +263,8 @@ def test_examples_in_the_help_work(capsys: Captured) -> None:
     for line in examples:
         arguments = [quoted or bare for quoted, bare in re.findall(r'"([^"]*)"|(\S+)', line)]
         assert output_of(capsys, *arguments)
+
+
+def test_a_comma_is_named_as_such(capsys: pytest.CaptureFixture[str]) -> None:
+    assert main(["z = 6,3"]) == 2
+    assert "'6,3' has a comma; write the decimal mark as a point" in capsys.readouterr().err

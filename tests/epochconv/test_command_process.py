@@ -116,7 +116,7 @@ def test_bytes_that_spell_nothing_are_a_bad_line_and_no_crash() -> None:
         expected=1,
         PYTHONIOENCODING="utf-8",
     )
-    assert done.stdout.split() == ["0.5", "0.25"]
+    assert done.stdout.split() == ["0.5", "none", "0.25"]
     assert done.stderr.startswith("epochconv: line 2: ")
     assert "Traceback" not in done.stderr
 

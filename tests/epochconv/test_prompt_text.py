@@ -58,9 +58,9 @@ def test_missing_unit_is_refused_with_the_line_to_type() -> None:
         ("redshift = 2.5 Gyr", "Gyr does not fit redshift, which is a number; give a bare number"),
         ("age = 3 Mpc", "Mpc does not fit age, which is a time; use yr, kyr, Myr, Gyr, d, s"),
         ("mu = 3 K", "K does not fit distance modulus, which is a magnitude; use mag"),
-        ("age = 3 gyr", "'gyr' in ' 3 gyr' is not a unit that is known here"),
+        ("age = 3 gyr", "'gyr' in '3 gyr' is not a unit that is known here"),
         ("agee = 3 Gyr", "Did you mean 'age'?"),
-        ("z = two", "' two' is not a number with a unit"),
+        ("z = two", "'two' is not a number with a unit"),
     ],
 )
 def test_given_is_refused_in_plain_words(text: str, words: str) -> None:
