@@ -136,8 +136,9 @@ class ColumnFiller:
         """List what stays unfilled because of the source column, and what to know of the rest."""
         source, column = self.source, self.source.cells.column
         where = self._where(column)
-        passed = [(p, why) for p, why in source.passed_over.items() if self.wanted[p]]
-        self.plan.passed_over += [NamedCell(where(p), why) for p, why in sorted(passed)]
+        if np.any(self.wanted):  # headings that are repeated stand in the other columns too
+            passed = sorted(source.passed_over.items())
+            self.plan.passed_over += [NamedCell(where(p), why) for p, why in passed]
         reasons = self.moments.reasons | source.reasons
         texts = self.reading.texts_of(column) if reasons else {}
         for position in sorted(reasons):

@@ -62,7 +62,7 @@ def plan_sheet(reading: SheetReading, request: Request, styles: StyleSheet | Non
     plan.notes += _about_errors(plan, moments, request)
     if plan.changed:
         plan.notes += _about_reading(request)
-        plan.notes += column_warnings(moments, [one.heading for one in plan.columns])
+        plan.notes += column_warnings(moments, [c.heading for c in plan.columns], reading)
     return plan
 
 

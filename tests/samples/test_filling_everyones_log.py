@@ -247,6 +247,7 @@ TIMES = Case(
     notes=[
         "brackets behind numbers were taken for notes (--brackets-are-notes)",
         "1 redshift is above 20, where no object is known",
+        "in powers of h, taken with h = 0.6736: 'D_C [h\u207b\u00b9 Mpc]'",
     ],
     differing=[
         ("Redshift", "z"),
