@@ -50,7 +50,9 @@ def number_and_unit(text: str) -> tuple[float, Unit | None]:
     text = text.strip()
     found = number_and_rest(text)
     if found is not None and found[1].startswith(","):
-        raise ArgumentError(f"{text!r} has a comma; write the decimal mark as a point, like '10.9 Gyr'")
+        raise ArgumentError(
+            f"{text!r} has a comma; write the decimal mark as a point, like '10.9 Gyr'"
+        )
     if found is None or abs(found[0]) == float("inf"):
         raise ArgumentError(f"{text!r} is not a number with a unit; write it like '10.9 Gyr'")
     number, rest = found

@@ -1,4 +1,4 @@
-"""What `look` says a fill would do is what `fill` does, on every workbook that the tests have."""
+"""What `look` says a fill would do is what `fill` does, once, on every workbook of the tests."""
 
 from __future__ import annotations
 
@@ -84,6 +84,20 @@ def test_look_and_fill_never_disagree(path: Path, tmp_path: Path) -> None:
             assert seen.stop is None
             assert planned(seen) == done(result)
             assert seen.left == bool(result.left)
+
+
+@every_workbook
+def test_a_second_run_finds_nothing_more_to_fill(path: Path, tmp_path: Path) -> None:
+    for choices in CHOICES:
+        output = tmp_path / f"filled{path.suffix}"
+        result = attempted(path, output, choices)
+        if isinstance(result, EpochconvError):
+            continue
+        before = state(output)
+        again = fill(output, **choices)
+        assert (again.written, again.filled) == (False, 0), choices
+        assert {one for one in again.left if one not in result.left} == set()
+        assert state(output) == before
 
 
 @every_workbook
