@@ -52,6 +52,11 @@ class Heading:
         """The unit as it is written behind a name, "" for none."""
         return f"h^{self.h_power} {self.unit.symbol}" if self.h_power else self.unit.symbol
 
+    @property
+    def was_measured(self) -> bool:
+        """Whether it says that its values are observed: then none is to be computed."""
+        return bool(self.method) or self.frame not in ("", "CMB")
+
     def same_kind(self, other: Heading) -> bool:
         """Tell whether the other one holds the same measure in the same unit."""
         return (self.measure, self.unit, self.h_power) == (

@@ -107,7 +107,7 @@ def _source(reading: SheetReading, request: Request) -> tuple[int, Heading] | No
     if len(sources) > 1:
         if _has_blank_target(reading, sources, request):
             source_choice.refuse_several(reading, sources)
-        waited_for = source_choice.waited_for(reading, sources, request.with_errors)
+        waited_for = source_choice.waited_for(reading, sources, request)
         source_choice.refuse_several(reading, waited_for)
         sources = waited_for or sources
     return (sources[0], reading.headings[sources[0]]) if sources else None
@@ -126,11 +126,6 @@ def _has_blank_target(reading: SheetReading, sources: list[int], request: Reques
         if not reading.headings[one.column].same_kind(reading.headings[target.column])
         for position in range(len(target.kinds))
     )
-
-
-def _was_measured(heading: Heading) -> bool:
-    """Tell whether a heading says that its values are observed: then none is to be computed."""
-    return bool(heading.method) or heading.frame not in ("", "CMB")
 
 
 def _targets(
@@ -158,7 +153,7 @@ def _targets(
         for column, heading in reading.headings.items()
         if column != source
         and not heading.same_kind(source_heading)
-        and not _was_measured(heading)
+        and not heading.was_measured
         and (not request.only or any(source_choice.is_called(heading, one) for one in request.only))
     }
     return sorted((targets | asked).items()), added

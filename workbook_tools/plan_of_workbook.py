@@ -30,7 +30,7 @@ def plan_workbook(workbook: OpenWorkbook, request: Request) -> tuple[list[SheetP
         notes += reading.doubts(plan.source)
         headings += reading.headings.values()
         sources += plan.source is not None
-        if plan.columns or plan.left or plan.notes:
+        if plan.columns or plan.left or plan.passed_over or plan.notes:
             plans.append(plan)
             workbook.hold(sheet.part, reading.scan.xml)
     _check_request(workbook.label, request, headings, sources)

@@ -64,8 +64,13 @@ def _hidden(reading: SheetReading) -> list[int]:
 
 
 def _merged(reading: SheetReading, column: int) -> list[int]:
+    """Return the rows that share a cell; one merged within its row belongs to that row alone."""
     numbers, rows = reading.scan.numbers, reading.rows
-    areas = [a for a in reading.merged if a.first_column <= column <= a.last_column]
+    areas = [
+        area
+        for area in reading.merged
+        if area.first_column <= column <= area.last_column and area.height > 1
+    ]
     return [
         position
         for area in areas

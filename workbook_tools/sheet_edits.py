@@ -20,6 +20,8 @@ from workbook_tools.xml_offsets import escape_text, qualified, set_attribute
 
 # Rows that are laid out at a time: many enough to be quick, few enough to take little memory.
 _ROWS_AT_ONCE = 4096
+# Stands for a cell that is not there: takes row and value, and writes nothing.
+_NOTHING = b"%.0a%.0a"
 
 
 @dataclass
@@ -73,27 +75,29 @@ class _RowForm:
     """The new cells of a row without their numbers and texts; many rows have the same form.
 
     Attributes:
-        places: which of the columns have a cell.
         first, last: columns of the outermost cells.
     """
 
     def __init__(self, columns: list[NewCells], codes: tuple[int, ...], prefix: bytes) -> None:
-        self.places = [place for place, code in enumerate(codes) if code]
-        self._columns = [columns[place].column for place in self.places]
-        self._forms = [
-            _form_of_cell(columns[place].column, codes[place], prefix) for place in self.places
+        self._cells = [
+            (place, one.column, _form_of_cell(one.column, code, prefix))
+            for place, (one, code) in enumerate(zip(columns, codes, strict=True))
+            if code
         ]
-        self._whole = b"".join(self._forms)
-        self.first, self.last = self._columns[0], self._columns[-1]
+        forms = {place: form for place, _, form in self._cells}
+        self._whole = b"".join(forms.get(place, _NOTHING) for place in range(len(codes)))
+        self.first, self.last = self._cells[0][1], self._cells[-1][1]
 
     def together(self, values: tuple[object, ...]) -> bytes:
-        """Return the cells as one run of bytes, given row and value of each in turn."""
+        """Return the cells as one run of bytes, given row and value of every column in turn."""
         return self._whole % values
 
     def apart(self, values: tuple[object, ...]) -> list[tuple[int, bytes]]:
         """Return column and bytes of each cell."""
-        cells = enumerate(zip(self._columns, self._forms, strict=True))
-        return [(column, form % values[2 * at : 2 * at + 2]) for at, (column, form) in cells]
+        return [
+            (column, form % values[2 * place : 2 * place + 2])
+            for place, column, form in self._cells
+        ]
 
 
 def _form_of_cell(column: int, code: int, prefix: bytes) -> bytes:
@@ -123,26 +127,19 @@ class _Columns:
         rows = np.unique(np.concatenate(every))
         for start in range(0, len(rows), _ROWS_AT_ONCE):
             part = rows[start : start + _ROWS_AT_ONCE]
-            yield from zip(part.tolist(), *self._laid_out(part), strict=True)
-
-    def _laid_out(self, part: NDArray[np.int64]) -> tuple[list[_RowForm], list[tuple[object, ...]]]:
-        """Return form and values of each of the rows, all of one form worked out together."""
-        columns = [self._in_rows(place, part) for place in range(len(self._new))]
-        alike: dict[tuple[int, ...], list[int]] = {}
-        for at, key in enumerate(zip(*(codes for codes, _ in columns), strict=True)):
-            alike.setdefault(key, []).append(at)
-        numbers = part.tolist()
-        forms: list[Any] = [None] * len(numbers)
-        values: list[Any] = [()] * len(numbers)
-        for key, places in alike.items():
-            form = self._forms.get(key)
-            if form is None:
-                form = self._forms[key] = _RowForm(self._new, key, self._prefix)
-            lists = (one for place in form.places for one in (numbers, columns[place][1]))
-            picked = ([one[at] for at in places] for one in lists)
-            for at, its_values in zip(places, zip(*picked, strict=True), strict=True):
-                forms[at], values[at] = form, its_values
-        return forms, values
+            numbers = part.tolist()
+            codes: list[list[int]] = []
+            values: list[list[Any]] = []
+            for place in range(len(self._new)):
+                column_codes, column_values = self._in_rows(place, part)
+                codes.append(column_codes)
+                values += [numbers, column_values]
+            keys, rows_of_values = zip(*codes, strict=True), zip(*values, strict=True)
+            for row, key, its_values in zip(numbers, keys, rows_of_values, strict=True):
+                form = self._forms.get(key)
+                if form is None:
+                    form = self._forms[key] = _RowForm(self._new, key, self._prefix)
+                yield row, form, its_values
 
     def _in_rows(self, place: int, part: NDArray[np.int64]) -> tuple[list[int], list[Any]]:
         """Return code and value of one column's cell in each of the rows.

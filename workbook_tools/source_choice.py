@@ -11,11 +11,11 @@ from workbook_tools.cell_address import column_letters, column_number
 from workbook_tools.column_meanings import ERRORS, Heading, Role
 from workbook_tools.errors import UsageError
 from workbook_tools.headings import lacks_unit, read_heading, same_heading
-from workbook_tools.request import Request
+from workbook_tools.request import ErrorTerms, Request
 from workbook_tools.rows_passed_over import rows_passed_over
 from workbook_tools.sheet_reading import SheetReading
 from workbook_tools.typed_cells import LIMIT, NUMBER, ColumnCells
-from workbook_tools.value_columns import read_values
+from workbook_tools.value_columns import ValueColumn, read_values
 
 _LETTERS = re.compile(r"\$?([A-Za-z]{1,3}):\$?([A-Za-z]{1,3})")
 
@@ -95,37 +95,47 @@ def possible_sources(reading: SheetReading) -> list[int]:
     ]
 
 
-def waited_for(reading: SheetReading, sources: Sequence[int], with_errors: bool) -> list[int]:
+def waited_for(reading: SheetReading, sources: Sequence[int], request: Request) -> list[int]:
     """Return the sources from which error columns and flag columns of others could be filled.
 
     Args:
         sources: columns of values, each of which could serve.
-        with_errors: whether error columns are to be appended where there are none.
     """
     values = {column: read_values(reading, column, reading.headings[column]) for column in sources}
+    anywhere = any(held.has_errors for held in values.values())
+    # Where none gives errors, those that are asked for count alone, and any could be their source;
+    # where some do, they may have been made so from a column that gives none.
+    asked = request.error_terms != ErrorTerms()
     found = set()
-    for owner in reading.headings:
-        companions = {role: reading.companion(owner, role) for role in (*ERRORS, Role.LIMIT_FLAG)}
+    for owner, heading in reading.headings.items():
+        if heading.was_measured:
+            continue
+        lacks = request.with_errors and _lacks_errors(reading, owner) and not (asked and anywhere)
         for source, held in values.items():
-            if source == owner or held.heading.same_kind(reading.headings[owner]):
+            if source == owner or held.heading.same_kind(heading):
                 continue
-            for role, column in companions.items():
-                if column is None:
-                    continue
-                (cells,) = reading.columns([column])
-                errors = ~np.isnan(held.lower)
-                wanted = (
-                    list(held.limits)
-                    if role is Role.LIMIT_FLAG
-                    else np.flatnonzero(errors).tolist()
-                )
-                if any(cells.is_blank(position) for position in wanted):
-                    found.add(source)
-            (own,) = reading.columns([owner])
-            stated = own.errors or any(companions[role] for role in ERRORS)
-            if with_errors and held.has_errors and not stated:
+            if (lacks and (asked or held.has_errors)) or _waits(reading, owner, held):
                 found.add(source)
     return sorted(found)
+
+
+def _lacks_errors(reading: SheetReading, column: int) -> bool:
+    (cells,) = reading.columns([column])
+    stated = any(reading.companion(column, role) is not None for role in ERRORS)
+    return not stated and not cells.errors
+
+
+def _waits(reading: SheetReading, owner: int, source: ValueColumn) -> bool:
+    """Tell whether a companion is blank beside an error or a limit of a source."""
+    errors = np.flatnonzero(~np.isnan(source.lower)).tolist()
+    for role in (*ERRORS, Role.LIMIT_FLAG):
+        column = reading.companion(owner, role)
+        if column is not None:
+            (cells,) = reading.columns([column])
+            given = source.limits if role is Role.LIMIT_FLAG else errors
+            if any(cells.is_blank(position) for position in given):
+                return True
+    return False
 
 
 def refuse_several(reading: SheetReading, sources: list[int]) -> None:

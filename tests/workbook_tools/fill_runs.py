@@ -211,7 +211,7 @@ def _wrong_ages(made: Run, cells: Values) -> Iterator[str]:
         elif not same_value(value, _age(source.get(place[0]))):
             yield f"{_name(place)} is {value!r}, the age of {source.get(place[0])!r}"
     named = {cell for sheet, cell, _ in made.result.left if sheet == made.sheet}
-    named |= {cell for plan in made.result.plans for cell in plan.passed_over}
+    named |= {one.cell for plan in made.result.plans for one in plan.passed_over}
     filled = {row for row, _ in cells}
     log = _log_rows(made, headings)
     for row, value in source.items():

@@ -91,7 +91,10 @@ def test_a_second_run_finds_nothing_more_to_fill(path: Path, tmp_path: Path) -> 
     for choices in CHOICES:
         output = tmp_path / f"filled{path.suffix}"
         result = attempted(path, output, choices)
-        if isinstance(result, EpochconvError):
+        # Where there is no row of headings, nothing tells that a column was added before.
+        if isinstance(result, EpochconvError) or any(
+            p.reading.header is None for p in result.plans
+        ):
             continue
         before = state(output)
         again = fill(output, **choices)
