@@ -1,8 +1,8 @@
 """The commonest cells in one pattern, for speed; the grammar reads them to the same values.
 
-They are a number, "<" and a number, a number with "±" and an error, with "+" and "-" errors or with
-digits of error in brackets, each with or without a unit in letters. Whatever is not plainly one of
-these, or has anything to be said about it but these, is the grammar's.
+They are a number, "<" or "~" and a number, a number with "±" and an error, with "+" and "-" errors,
+in brackets or not, or with digits of error in brackets, each with or without a unit in letters.
+Whatever is not plainly one of these, or has more to be said about it, is the grammar's.
 """
 
 from __future__ import annotations
@@ -19,14 +19,15 @@ from epochconv.units import find_unit
 def _pattern(decimal_comma: bool) -> re.Pattern[str]:
     digits = plain_digits(decimal_comma)
     return re.compile(
-        rf"\s*([<>≤≥]?)\s*({SIGN}?{digits}{EXPONENT}?)"
+        rf"\s*([<>≤≥~≈]?)\s*({SIGN}?{digits}{EXPONENT}?)"
         rf"(?:\s*(?:±|\+/-|\+-)\s*({digits})|\(([0-9]+)\)"
-        rf"|\s*\+\s?({digits})\s?[/,]?\s?[-−]\s?({digits}))?"
+        rf"|(?:\s*|\s(\())\+\s?({digits})\s?[/,]?\s?[-−]\s?({digits})(?(5)\)))?"
         r"(?:\s?([A-Z]?[a-z]*[A-Za-z]))?\s*"
     )
 
 
 _PATTERNS = {comma: _pattern(comma) for comma in (False, True)}
+_ABOUT = ("~", "≈")
 _REMARKS: dict[tuple[bool, bool], tuple[Remark, ...]] = {
     (has_unit, uneven): (Remark.UNIT,) * has_unit + (Remark.ASYMMETRIC,) * uneven
     for has_unit in (False, True)
@@ -39,7 +40,7 @@ def read_common(text: str, decimal_comma: bool, brackets_are_notes: bool) -> Typ
     found = _PATTERNS[decimal_comma].fullmatch(text)
     if found is None:
         return None
-    limit, number, even, last_digits, upper, lower, unit_text = found.groups()
+    sign, number, even, last_digits, _, upper, lower, unit_text = found.groups()
     number = number.replace("−", "-")
     if decimal_comma:
         number = number.replace(",", ".")
@@ -51,9 +52,12 @@ def read_common(text: str, decimal_comma: bool, brackets_are_notes: bool) -> Typ
         unit = find_unit(unit_text) if len(unit_text) > 1 else None
         if unit is None or unit.dimension == "number":
             return None
+    remarks = _REMARKS[unit is not None, False]
     if even is None and last_digits is None and upper is None:
-        return Typed(value, None, None, limit, unit, _REMARKS[unit is not None, False])
-    if limit or "e" in number or "E" in number:
+        if sign in _ABOUT:
+            return Typed(value, None, None, "", unit, (Remark.APPROXIMATE, *remarks))
+        return Typed(value, None, None, sign, unit, remarks)
+    if sign or "e" in number or "E" in number:
         return None
     if last_digits is not None:
         decimals = len(number.partition(".")[2])
