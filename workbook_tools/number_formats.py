@@ -38,7 +38,9 @@ def format_for(values: Sequence[float], source_digits: int) -> str:
     sizes = sizes[sizes > 0.0]
     if not len(sizes):
         return "0." + "0" * (digits - 1)
-    low, middle, high = float(sizes.min()), float(np.median(sizes)), float(sizes.max())
+    low, high = float(sizes.min()), float(sizes.max())
+    with np.errstate(over="ignore"):  # of the mean of two huge ones
+        middle = min(float(np.median(sizes)), high)
     decimals = max(digits - 1 - math.floor(math.log10(middle)), 1 - math.floor(math.log10(low)), 0)
     if high >= 1e9 or decimals > 6:
         return "0." + "0" * (digits - 1) + "E+00"

@@ -241,7 +241,7 @@ class SheetReading:
         (cells,) = self.columns([column])
         held = np.frombuffer(cells.kinds, dtype=np.uint8) == NUMBER
         numbers = np.array(cells.numbers)[held]
-        return len(numbers) > 0 and float(np.median(numbers)) > _LIKE_MAGNITUDES
+        return 2 * int(np.count_nonzero(numbers > _LIKE_MAGNITUDES)) > len(numbers)
 
     def _limit_rows(self) -> None:
         """Set the rows of the log: those of the header's table, or all down to a table below."""

@@ -310,3 +310,38 @@ def test_no_command_line_ends_in_a_traceback(
     if code == 0 and "written: " in out:
         filled = tmp_path / out.rpartition("written: ")[2].strip()
         assert cells(filled).items() >= cells(next(iter(dated_copies(filled)), filled)).items()
+
+
+TYPED = [["z", "Age [Gyr]"], ["1,0 (a)"], ["2.0(1)"], [-99.0], [1.0]]
+
+
+def test_choices_of_reading_are_passed_on(
+    capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
+    path = write_log(tmp_path / "log.xlsx", TYPED)
+    code, out, _ = run(capsys, "fill", path, "--output", tmp_path / "plain.xlsx")
+    assert code == 3
+    assert "left 1: a redshift of -1 or below is impossible" in out
+    options = ["--decimal-comma", "--brackets-are-notes", "--missing", "-99"]
+    for command in (["fill", path, "--output", tmp_path / "out.xlsx"], ["look", path]):
+        code, out, _ = run(capsys, *command, *options)
+        assert code == 0
+        assert "note: no value in column A: -99 (1)" in out
+        assert "(--decimal-comma)" in out
+        assert "(--brackets-are-notes)" in out
+    assert run(capsys, "look", path, *options[:2], "--missing=-99")[0] == 0
+
+
+def test_choices_of_errors_are_passed_on(
+    capsys: pytest.CaptureFixture[str], tmp_path: Path
+) -> None:
+    path = write_log(tmp_path / "log.xlsx", [["z", "Age [Gyr]"], ["2.0(1)"]])
+    options = ["--with-errors", "--parameter-error", "--peculiar-velocity", "300"]
+    code, out, _ = run(capsys, "fill", path, *options)
+    assert code == 0
+    assert "new column C 'upper error of Age [Gyr]': 1 cell filled from A 'z'" in out
+    assert "errors of planck 2018 counted: H0 ± 0.54" in out
+    assert "errors count peculiar motions of 300 km/s" in out
+    code, _, err = run(capsys, "fill", path, "--peculiar-velocity=-3")
+    assert (code, err.count("\n")) == (2, 1)
+    assert "is no speed from 0 to 30,000 km/s" in err

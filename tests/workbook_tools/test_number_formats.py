@@ -103,3 +103,7 @@ def test_half_a_unit_of_the_last_digit_shown(value: float, code: str, step: floa
 )
 def test_blanks_get_as_many_decimals_as_were_typed(typed: list[float], code: str) -> None:
     assert format_like(typed) == code
+
+
+def test_the_largest_numbers_have_a_format() -> None:
+    assert format_for([9e307, 9e307], 3) == "0.00E+00"
