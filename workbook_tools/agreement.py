@@ -8,7 +8,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from epochconv.published import label_of, parameter_sets
-from epochconv.units import Unit, factor
+from epochconv.units import factor
 from workbook_tools.answers import FloatArray, Moments
 from workbook_tools.column_meanings import Heading
 from workbook_tools.number_formats import shown_step
@@ -29,23 +29,28 @@ class Agreement:
     """
 
     def __init__(
-        self, belongs: FloatArray, target: ColumnCells, unit: Unit, code_of: Callable[[int], str]
+        self,
+        belongs: FloatArray,
+        target: ColumnCells,
+        heading: Heading,
+        code_of: Callable[[int], str],
     ) -> None:
         """Compare a column.
 
         Args:
             belongs: what the source's conversion gives for each row, NaN for nothing.
             target: the cells of the column.
-            unit: of the column.
+            heading: of the column, whose unit counts.
             code_of: the number format of a style.
         """
+        unit = heading.unit
         typed, steps = np.full(len(belongs), np.nan), np.zeros(len(belongs))
         for position, kind in enumerate(target.kinds):
             if kind != NUMBER or np.isnan(belongs[position]):
                 continue
-            own = target.units.get(position, unit)
-            if own.dimension == unit.dimension:
-                number, scale = target.numbers[position], factor(own, unit)
+            own = target.units.get(position)
+            if own is None or (own.dimension == unit.dimension and not heading.h_power):
+                number, scale = target.numbers[position], factor(own or unit, unit)
                 typed[position] = number * scale
                 steps[position] = scale * shown_step(number, code_of(target.styles[position]))
         self._belongs, self._typed, self._steps = belongs, typed, steps

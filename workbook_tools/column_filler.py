@@ -170,7 +170,7 @@ class ColumnFiller:
             Refusal: it has blanks, and does not agree.
         """
         values = self.answers(heading).values
-        found = Agreement(values, target, heading.unit, self.looks.code)
+        found = Agreement(values, target, heading, self.looks.code)
         if found.wrong and has_room:
             where = self._where(target.column)
             raise Refusal(disagreement(self.moments, found, heading, where))
@@ -195,7 +195,7 @@ class ColumnFiller:
             heading = replace(heading, unit=meaning.unit)
         if role in ERRORS and cells.count(NUMBER):
             sizes = _sizes_for(role, self.answers(heading))
-            found = Agreement(sizes, cells, heading.unit, self.looks.code)
+            found = Agreement(sizes, cells, heading, self.looks.code)
             if found.wrong:
                 self.plan.notes.append(
                     f"column {column_letters(column)} is left alone, since its errors are others:"

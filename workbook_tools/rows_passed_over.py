@@ -65,7 +65,7 @@ def _hidden(reading: SheetReading) -> list[int]:
 
 def _merged(reading: SheetReading, column: int) -> list[int]:
     """Return the rows that share a cell; one merged within its row belongs to that row alone."""
-    numbers, rows = reading.scan.numbers, reading.rows
+    rows = reading.rows
     areas = [
         area
         for area in reading.merged
@@ -76,7 +76,6 @@ def _merged(reading: SheetReading, column: int) -> list[int]:
         for area in areas
         for index in reading.scan.rows_between(area.first_row, area.last_row)
         if 0 <= (position := index - rows.start) < len(rows)
-        and area.contains(numbers[index], column)
     ]
 
 

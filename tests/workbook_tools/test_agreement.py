@@ -32,7 +32,7 @@ def check(
     moments = Moments(read_values(reading, 1, reading.headings[1]), history_of(parameters), None)
     (target,) = reading.columns([2])
     own = reading.headings[2]
-    found = Agreement(moments.answers(own).values, target, own.unit, lambda style: code)
+    found = Agreement(moments.answers(own).values, target, own, lambda style: code)
     return disagreement(moments, found, own, lambda p: reading.where(p, 2)) if found.wrong else ""
 
 
@@ -93,7 +93,7 @@ def test_cells_where_nothing_can_be_computed_are_not_compared() -> None:
     moments = Moments(read_values(reading, 1, reading.headings[1]), history_of(None), None)
     (target,) = reading.columns([2])
     own = reading.headings[2]
-    found = Agreement(moments.answers(own).values, target, own.unit, lambda style: "General")
+    found = Agreement(moments.answers(own).values, target, own, lambda style: "General")
     assert found.wrong == []
 
 
@@ -104,3 +104,8 @@ def test_cells_with_a_unit_of_their_own_are_compared_in_the_column_s() -> None:
 
 def test_limits_and_other_dimensions_are_not_compared() -> None:
     assert check(["<5.9", "3 Mpc", ">1"]) == ""
+
+
+def test_a_unit_without_the_h_of_the_column_is_not_compared() -> None:
+    assert check(["5 Mpc"], heading="D_C [h^-1 Mpc]") == ""
+    assert check([5.0], heading="D_C [h^-1 Mpc]")
