@@ -134,7 +134,7 @@ class SheetReading:
             settled: a column of which somebody has said what it holds.
         """
         return [
-            f"heading {' '.join(self.texts.get(column, '').split())!r}"
+            f"sheet {self.sheet.name!r}: heading {' '.join(self.texts.get(column, '').split())!r}"
             f" ({column_letters(column)}{self.header_row}) is left alone: {meaning.reason}"
             for column, meaning in sorted(self.meanings.items())
             if meaning.role is Role.UNCLEAR and column != settled

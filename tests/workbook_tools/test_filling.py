@@ -337,7 +337,7 @@ def test_a_workbook_with_nothing_to_fill_stays_as_it_is(path: Path, rows: Grid) 
 def test_measures_without_a_unit_are_mentioned(path: Path) -> None:
     result, _ = filled(write_log(path, [["z", "Age", "a []"], [1.0]]))
     assert result.warnings == [
-        "heading 'Age' (B1) is left alone: age without a unit; write 'Age [Gyr]'"
+        "sheet 'Log': heading 'Age' (B1) is left alone: age without a unit; write 'Age [Gyr]'"
     ]
 
 

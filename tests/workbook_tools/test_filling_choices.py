@@ -116,7 +116,7 @@ def test_a_heading_in_doubt_is_left_alone_and_said(path: Path, heading: str, wor
     result, new = filled(path, [["Object", "z", heading, "Age [Gyr]"], ["a", 1.0]])
     assert new.keys() == {"D2"}
     (warning,) = result.warnings
-    assert warning.startswith(f"heading '{heading}' (C1) is left alone: ")
+    assert warning.startswith(f"sheet 'Log': heading '{heading}' (C1) is left alone: ")
     assert words in warning
     assert json_report(result)["warnings"] == [warning]
 

@@ -125,8 +125,9 @@ def test_a_merge_that_is_no_range_is_refused() -> None:
 def test_measures_without_their_unit_are_told() -> None:
     reading = reading_of(grid(["z", "Age", "D_C", "Note"], [1.0]))
     assert reading.doubts() == [
-        "heading 'Age' (B1) is left alone: age without a unit; write 'Age [Gyr]'",
-        "heading 'D_C' (C1) is left alone: comoving distance without a unit; write 'D_C [Mpc]'",
+        "sheet 'Log': heading 'Age' (B1) is left alone: age without a unit; write 'Age [Gyr]'",
+        "sheet 'Log': heading 'D_C' (C1) is left alone: comoving distance without a unit; write"
+        " 'D_C [Mpc]'",
     ]
     assert len(reading.doubts(settled=2)) == 1
 
