@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import functools
 from array import array
 from collections import Counter
 from collections.abc import Callable, Sequence
@@ -213,16 +214,21 @@ class ColumnFiller:
             return {}
         return {
             position: typed_text(
-                float(answers.values[position]), limit=sign, digits=self._limit_digits(position)
+                float(answers.values[position]), limit=sign, digits=self._limit_digits[position]
             )
             for position, sign in answers.limits.items()
             if blank[position]
         }
 
-    def _limit_digits(self, position: int) -> int:
-        """Return how many digits a limit gets: as many as its source has, three to five."""
-        digits = significant_digits(self.source.cells.numbers[position])
-        return min(max(digits, _LIMIT_DIGITS[0]), _LIMIT_DIGITS[1])
+    @functools.cached_property
+    def _limit_digits(self) -> dict[int, int]:
+        """How many digits each limit gets: as many as its source has, three to five."""
+        fewest, most = _LIMIT_DIGITS
+        numbers = self.source.cells.numbers
+        return {
+            position: min(max(significant_digits(numbers[position]), fewest), most)
+            for position in self.source.limits
+        }
 
     def _leave_unsigned(
         self, answers: Answers, blank: BoolArray, heading: Heading, target: ColumnCells | None

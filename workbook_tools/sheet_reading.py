@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Iterator, Mapping, Sequence
 
 import numpy as np
 
@@ -66,6 +66,7 @@ class SheetReading:
         self._headers = HeaderFinder(scan, self._row_texts, self.merged)
         self._rules = rules
         self._known: dict[int, ColumnCells] = {}
+        self._known_texts: dict[int, dict[int, str]] = {}
         self.rows = range(0)
         self._take_header(self._find_header(header_row))
 
@@ -88,10 +89,15 @@ class SheetReading:
             None,
         )
 
-    def texts_of(self, column: int) -> dict[int, str]:
+    def texts_of(self, column: int) -> Mapping[int, str]:
         """Return the texts of a column's cells, by position in the rows of the log."""
-        found = self._quick_texts(column) if self.scan.cells_regular else self._all_texts(column)
-        return {position: text for position, text in found if text.strip()}
+        known = self._known_texts.get(column)
+        if known is None:
+            quick = self.scan.cells_regular
+            found = self._quick_texts(column) if quick else self._all_texts(column)
+            known = {position: text for position, text in found if text.strip()}
+            self._known_texts[column] = known
+        return known
 
     def texts_in_row(self, position: int) -> dict[int, str]:
         """Return the texts in a row of the log, by column."""
@@ -118,6 +124,7 @@ class SheetReading:
         if above:
             self._take_header(self._headers.at(max(above)))
         else:
+            self._forget()
             self.rows = range(first, len(self.scan))
 
     def doubts(self, settled: int | None = None) -> list[str]:
@@ -200,7 +207,7 @@ class SheetReading:
 
     def _take_header(self, header: HeaderBlock | None) -> None:
         self.header = header
-        self._known.clear()
+        self._forget()
         self.meanings: dict[int, Meaning] = {}
         self.headings: dict[int, Heading] = {}
         self.texts: dict[int, str] = {}
@@ -211,8 +218,13 @@ class SheetReading:
         self._limit_rows()
         magnitudes = [c for c in self.headings if self._looks_like_magnitudes(c)]
         if magnitudes:
-            self._known.clear()
+            self._forget()
             self._give_meanings(read_headings(header.rows, magnitudes))
+
+    def _forget(self) -> None:
+        """Forget cells that were read in other rows or under other names."""
+        self._known.clear()
+        self._known_texts.clear()
 
     def _give_meanings(self, meanings: dict[int, Meaning]) -> None:
         self.meanings = meanings
