@@ -266,7 +266,7 @@ def _in_unit(number: float, typed: Unit, unit: Unit) -> float:
 def _suspects(values: FloatArray, column: int) -> list[str]:
     """Return a sentence for each number that looks like a missing-value code."""
     # Some programs write 99.99 as 99.98999999999999.
-    rounded = np.round(values, 6)
+    rounded = np.round(np.where(np.abs(values) < 1e6, values, np.nan), 6)
     counts = Counter(rounded[np.isin(rounded, _SUSPECTS)].tolist())
     return [
         f"{value:g} stands {count} times in column {column_letters(column)} and looks like a code"
