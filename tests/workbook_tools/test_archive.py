@@ -382,7 +382,8 @@ def test_memory_does_not_grow_with_a_changed_member(how: str) -> None:
         finally:
             tracemalloc.stop()
 
-    assert peak(40_000) < 1.5 * peak(4_000)
+    # Of 17 MB up to 1 MB may wait to be deflated, whatever the size of the whole.
+    assert peak(80_000) < 3_000_000
 
 
 def sheet_xml(rows: int) -> Iterator[bytes]:
