@@ -139,11 +139,6 @@ def _seen(reading: SheetReading, plan: SheetPlan | None) -> SeenSheet:
     return SeenSheet(reading.sheet, reading.header_row, rows, columns, plan)
 
 
-def _matters(meaning: Meaning) -> bool:
-    errors = (Role.ERROR, Role.UPPER_ERROR, Role.LOWER_ERROR)
-    return meaning.role is Role.VALUE or meaning.role in errors
-
-
 def _kinds(reading: SheetReading, column: int, meaning: Meaning) -> CellKinds | None:
     """Return how the cells of a column of values or errors read; None for other columns."""
     if meaning.role is Role.VALUE and meaning.heading is not None:

@@ -103,6 +103,13 @@ def test_a_symmetric_error_column_holds_the_larger_side_and_says_so(path: Path) 
     ]
 
 
+def test_the_larger_side_may_be_the_lower_one(path: Path) -> None:
+    _, new = filled(path, [["z", "t_L [Gyr]", "e_t_L"], ["2.0±0.5"]])
+    lower, upper = sides("lookback time", 1.5, 2.0, 2.5)
+    assert lower > upper
+    assert new["C2"] == pytest.approx(lower, rel=1e-11)
+
+
 def test_a_symmetric_error_is_not_called_uneven(path: Path) -> None:
     result, new = filled(path, [["z", "T_CMB [K]", "e_T_CMB"], ["2.0±0.5"]])
     assert new["C2"] == pytest.approx(0.5 * 2.7255, rel=1e-12)

@@ -248,6 +248,14 @@ def test_a_column_that_meets_a_merge_or_an_array_is_refused() -> None:
     assert numbers(plan(reading_of(scan_of(shifted, tail=title)))) == {"B3": AGES[1.0]}
 
 
+def test_a_merge_that_gets_no_value_refuses_nothing() -> None:
+    merge = '<mergeCells count="1"><mergeCell ref="C3:D3"/></mergeCells>'
+    for third in (["b", 2.0, 3.27], ["b", None], ["Spring nights"]):
+        rows = log(["a", 1.0], third, ["c", 3.0])
+        made = plan(reading_of(scan_of(rows, tail=merge)))
+        assert numbers(made) == {"C2": AGES[1.0], "C4": AGES[3.0]}
+
+
 def test_a_hidden_column_that_is_taken_is_shown_and_said() -> None:
     head = '<cols><col min="3" max="9" hidden="1"/></cols>'
     scan = scan_of(log(["a", 1.0], header=("Object", "z")), head=head)

@@ -139,3 +139,7 @@ def test_below_other_headings_nothing_is_taken_for_the_old_ones() -> None:
 
 def test_a_remark_that_is_a_heading_elsewhere_begins_no_other_log() -> None:
     assert passed(log(["a", 1.0], ["b", "Age [Gyr]"], ["c", 2.0])) == {}
+
+
+def test_a_label_among_the_values_is_a_text_like_others() -> None:
+    assert passed(reading_of(grid(["z", "Note"], [1.0], ["Total"])), 1) == {}

@@ -228,3 +228,9 @@ def test_the_order_of_a_column_without_values() -> None:
     assert np.isnan(found.values).all()
     assert (found.limits, found.has_errors) == ({}, False)
     assert list(found.reasons) == [1]
+
+
+def test_a_row_that_is_passed_over_is_not_left_for_its_unit_too() -> None:
+    rows = grid(["Object", "z"], ["a", 1.0], ["Mean", "3 Mpc"])
+    found = values_of(reading_of(rows), 2)
+    assert (found.passed_over, found.reasons) == ({1: "a line of totals"}, {})
